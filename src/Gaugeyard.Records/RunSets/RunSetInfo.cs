@@ -10,6 +10,7 @@ namespace Gaugeyard.Records.RunSets;
 public sealed record ColumnSummary(ColumnDefinition Definition, int Known, int Missing, int Filled, IReadOnlyList<string>? Levels);
 
 /// <summary>A run set as of one revision, without its values.</summary>
+/// <param name="HighestRecord">The highest record number ever given out, over all revisions.</param>
 public sealed record RunSetInfo(
     string Id,
     string Name,
@@ -22,7 +23,8 @@ public sealed record RunSetInfo(
     IReadOnlyList<ColumnSummary> Columns,
     IReadOnlyList<Finding> Findings,
     int Sources,
-    bool Demo);
+    bool Demo,
+    int HighestRecord);
 
 /// <summary>A file that was uploaded, kept byte for byte.</summary>
 /// <param name="Number">From 1 in order of upload.</param>

@@ -378,7 +378,7 @@ internal sealed class RunSetStore(StorageOptions options, IDbContextFactory<Stor
     }
 
     private static RunSetInfo Info(RunSetRow set, int revision, DateTime at, Summary summary, IReadOnlyList<Finding> findings, int sources) =>
-        new(set.Id, set.Name, set.Note, revision, Utc(at), summary.Records, summary.Vehicles, summary.SetAside, summary.Columns, findings, sources, set.Demo);
+        new(set.Id, set.Name, set.Note, revision, Utc(at), summary.Records, summary.Vehicles, summary.SetAside, summary.Columns, findings, sources, set.Demo, set.HighestRecord);
 
     private static DateTimeOffset Utc(DateTime at) => new(DateTime.SpecifyKind(at, DateTimeKind.Utc));
 
