@@ -204,6 +204,8 @@ public static class RunSetEdits
         {
             if (value is string { Length: 0 })
                 value = null;
+            if (value is int or long or decimal or float)
+                value = Convert.ToDouble(value, CultureInfo.InvariantCulture);
             if (_values is not null)
             {
                 if (value is null)
