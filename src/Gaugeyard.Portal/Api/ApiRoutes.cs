@@ -10,6 +10,7 @@ internal static class ApiRoutes
         var runSets = api.MapGroup("run-sets");
         runSets.MapRunSets();
         runSets.MapHandover();
+        runSets.MapGroups();
         app.MapOpenApi();
     }
 }
