@@ -19,7 +19,7 @@ public sealed record ReadLimits
     public long Cells { get; init; } = 500_000_000;
 
     /// <summary>Bytes that a compressed text file may inflate to.</summary>
-    public long InflatedTextBytes { get; init; } = 4L << 30;
+    public long UnpackedBytes { get; init; } = 4L << 30;
 
     /// <summary>Bytes that the parts of a workbook may inflate to, together.</summary>
     public long InflatedWorkbookBytes { get; init; } = 1L << 30;

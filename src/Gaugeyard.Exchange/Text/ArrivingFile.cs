@@ -164,8 +164,8 @@ internal sealed class ArrivingFile : IDisposable
             {
                 cancellationToken.ThrowIfCancellationRequested();
                 total += read;
-                if (total > limits.InflatedTextBytes)
-                    throw new UnreadableFileException($"{name} inflates to more than {Sizes.Say(limits.InflatedTextBytes)}, the limit for one file. Split it and upload the parts.");
+                if (total > limits.UnpackedBytes)
+                    throw new UnreadableFileException($"{name} inflates to more than {Sizes.Say(limits.UnpackedBytes)}, the limit for one file. Split it and upload the parts.");
                 target.Write(block, 0, read);
             }
         }
