@@ -11,6 +11,7 @@ internal static class ApiRoutes
         runSets.MapRunSets();
         runSets.MapHandover();
         runSets.MapGroups();
+        runSets.MapInfluences();
         app.MapOpenApi();
     }
 }
