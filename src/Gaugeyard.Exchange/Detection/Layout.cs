@@ -65,6 +65,14 @@ internal sealed record Layout(
         int above = header.Count > 0 ? header[0] : Math.Min(data, unit >= 0 ? unit : data);
         var names = JoinNames(header.Select(i => rows[i]).ToList(), width, merged);
         var units = unit >= 0 ? Enumerable.Range(0, width).Select(c => UnitText.Bare(rows[unit].At(c))).ToArray() : Enumerable.Repeat("", width).ToArray();
+        // cells beyond the last name make columns of their own when they come
+        int named = Array.FindLastIndex(names, n => n.Length > 0) + 1;
+        if (header.Count > 0 && named > 0)
+        {
+            width = Math.Max(named, Array.FindLastIndex(units, u => u.Length > 0) + 1);
+            names = names[..width];
+            units = units[..width];
+        }
         int firstColumn = 0;
         while (firstColumn < width - 1 && names[firstColumn].Length == 0 && rows.Skip(data).All(r => string.IsNullOrWhiteSpace(r.At(firstColumn))))
             firstColumn++;
@@ -130,13 +138,16 @@ internal sealed record Layout(
                 fit += sort == Sort.Value ? 1 : 0;
                 misfit += sort == Sort.Word ? 1 : 0;
             }
-            if (fit > misfit && rows[r].Filled * 2 >= typical)
+            // a record may be sparse where the names above it are complete and nothing in it is a word
+            bool sparse = misfit == 0 && r > 0 && rows[r - 1].Filled * 10 >= typical * 8 && fit == rows[r].Filled;
+            if (fit > misfit && (rows[r].Filled * 2 >= typical || sparse))
                 return r;
         }
-        // nothing but words: the first full row is the names
+        // nothing but words: the first full row is the names, and units may stand below it
+        int full = rows.Count <= 5 ? rows.Max(r => r.Filled) : typical;
         for (int r = 0; r < rows.Count; r++)
-            if (rows[r].Filled * 10 >= typical * 8)
-                return r + 1;
+            if (rows[r].Filled * 10 >= full * 8)
+                return r + 1 < rows.Count && IsUnitRow(rows[r + 1], width) ? r + 2 : r + 1;
         return 1;
     }
 
@@ -156,7 +167,8 @@ internal sealed record Layout(
         for (int c = 0; c < width; c++)
         {
             string cell = Blanks.Trim(row.At(c));
-            if (cell.Length == 0)
+            // "1" and "-" say "no unit" in a unit row, and say nothing about whether it is one
+            if (cell is "" or "1" or "-" or "–" or "[-]" or "(-)" or "%")
                 continue;
             if (UnitText.IsUnit(UnitText.Bare(cell)) || cell[0] == '[' && cell[^1] == ']')
                 units++;

@@ -130,6 +130,21 @@ internal sealed class ArrivingFile : IDisposable
         }
     }
 
+    // the inflater takes a cut stream for an ended one; the last four bytes say how much there should be (block-wise archives have an extra field and are left alone)
+    private static bool GzipIsWhole(string path, long total)
+    {
+        using var stream = File.OpenRead(path);
+        Span<byte> head = stackalloc byte[4], tail = stackalloc byte[4];
+        if (stream.Length < 18)
+            return false;
+        stream.ReadExactly(head);
+        if ((head[3] & 4) != 0)
+            return true;
+        stream.Seek(-4, SeekOrigin.End);
+        stream.ReadExactly(tail);
+        return System.Buffers.Binary.BinaryPrimitives.ReadUInt32LittleEndian(tail) == unchecked((uint)total);
+    }
+
     private static bool IsEncrypted(string path)
     {
         // the directory of an encrypted workbook names a stream "EncryptedPackage"; it stands early or late, so all is searched in blocks
@@ -168,6 +183,8 @@ internal sealed class ArrivingFile : IDisposable
                     throw new UnreadableFileException($"{name} inflates to more than {Sizes.Say(limits.UnpackedBytes)}, the limit for one file. Split it and upload the parts.");
                 target.Write(block, 0, read);
             }
+            if (archive is null && !GzipIsWhole(from, total))
+                throw new InvalidDataException("cut off");
         }
         catch (Exception e) when (e is InvalidDataException or NotSupportedException or EndOfStreamException)
         {

@@ -43,9 +43,12 @@ internal sealed class SegmentParser(ReadPlan plan, char delimiter, string fileNa
             DisableQuotesParsing = !segment.HasQuotes,
             DisableColCountCheck = true,
         }).From(new SegmentTextReader(segment.Buffer, segment.Length));
+        int next = segment.FirstLine;
         foreach (var row in reader)
         {
-            int line = segment.FirstLine + row.LineNumberFrom - 1;
+            // a record begins where the one before it ended; the reader's own first line number is one too high without a header
+            int line = next;
+            next = segment.FirstLine + row.LineNumberToExcl - 1;
             if (line < _fromLine)
                 continue;
             int n = row.ColCount;
