@@ -11,6 +11,7 @@ internal static class ApiRoutes
         runSets.MapRunSets();
         runSets.MapHandover();
         runSets.MapGroups();
+        runSets.MapPairs();
         runSets.MapInfluences();
         app.MapOpenApi();
     }
