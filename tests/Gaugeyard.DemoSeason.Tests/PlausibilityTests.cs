@@ -6,7 +6,8 @@ namespace Gaugeyard.DemoSeason.Tests;
 /// <summary>The season has what its dictionary promises, in bands that the trade would believe.</summary>
 public class PlausibilityTests
 {
-    private static readonly List<Dictionary<string, string>> Runs = Read(DemoFiles.ForUsers.Single(f => f.Name == "ottermoor-season-4.csv").Bytes);
+    // the row below the names holds the units
+    private static readonly List<Dictionary<string, string>> Runs = [.. Read(DemoFiles.ForUsers.Single(f => f.Name == "ottermoor-season-4.csv").Bytes).Skip(1)];
     private static readonly List<Dictionary<string, string>> Hidden = Read(DemoFiles.ForTests.Single(f => f.Name == "hidden-city-readings.csv").Bytes);
 
     [Fact]
@@ -83,7 +84,7 @@ public class PlausibilityTests
         byte[] bytes = DemoFiles.ForUsers.Single(f => f.Name == "lisbraten-winter-batch.csv").Bytes;
         Assert.Throws<DecoderFallbackException>(() => new UTF8Encoding(false, throwOnInvalidBytes: true).GetString(bytes));
         string text = Encoding.GetEncoding(1252).GetString(bytes);
-        Assert.Contains("[°C]", text);
+        Assert.Contains(";°C;", text);
         Assert.Matches(@"\n[^\n;]+;\d{1,2}\.\d{1,2}\.2032 \d\d:\d\d;", text);
         Assert.DoesNotMatch(@";\d+\.\d+;", text);
     }
@@ -99,7 +100,7 @@ public class PlausibilityTests
     private static List<Dictionary<string, string>> Read(byte[] csv)
     {
         string[] lines = Encoding.UTF8.GetString(csv).TrimEnd('\n').Split('\n');
-        string[] names = [.. lines[0].Split(',').Select(n => n.Split(" [")[0])];
+        string[] names = lines[0].Split(',');
         // the only quoted texts are remarks, in the last column
         return [.. lines.Skip(1).Select(l => names.Zip(l.Split(',')).ToDictionary(p => p.First, p => p.Second))];
     }

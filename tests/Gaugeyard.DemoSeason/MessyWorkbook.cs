@@ -102,7 +102,14 @@ internal static class MessyWorkbook
     {
         object? value = kind.Written(run);
         if (value is null)
-            return kind.IsNumber ? dice.Weighted([0.35, 0.25, 0.2, 0.2]) switch { 0 => "", 1 => Text(row, column, "n/a"), 2 => Number(row, column, 9999), _ => Text(row, column, "-") } : Text(row, column, "n/a");
+            return kind.IsNumber ? dice.Weighted([0.35, 0.25, 0.2, 0.2]) switch
+            {
+                0 => "",
+                1 => Text(row, column, "n/a"),
+                // an odometer may well stand at 9999
+                2 => kind.Name == Column.Odometer ? Text(row, column, "n/a") : Number(row, column, 9999),
+                _ => Text(row, column, "-"),
+            } : Text(row, column, "n/a");
         if (value is DateTime at)
             return $"<c r=\"{Letters(column)}{row}\" s=\"2\"><v>{Math.Round(at.ToOADate(), 9).ToString("R", CultureInfo.InvariantCulture)}</v></c>";
         if (value is double number)
@@ -117,8 +124,8 @@ internal static class MessyWorkbook
         string words = (string)value;
         if (words.Length == 0)
             return "";
-        // hands differ in spaces and capitals
-        return Text(row, column, kind.Name is "Route" or "Class" ? dice.Weighted([0.97, 0.015, 0.015]) switch { 1 => words + " ", 2 => words.ToLowerInvariant(), _ => words } : words);
+        // hands leave blanks behind
+        return Text(row, column, kind.Name is "Route" or "Class" && dice.Chance(0.02) ? words + " " : words);
     }
 
     private static string NotesSheet() =>

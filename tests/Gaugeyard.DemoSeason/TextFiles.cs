@@ -5,11 +5,12 @@ namespace Gaugeyard.DemoSeason;
 /// <summary>Writes the text files; lines end in LF, or in CR LF where the other site's program does so.</summary>
 internal static class TextFiles
 {
-    /// <summary>The whole season, comma separated, UTF-8, one name row with the units in brackets.</summary>
+    /// <summary>The whole season, comma separated, UTF-8, names in the first row and units in the second.</summary>
     public static byte[] Season(IReadOnlyList<Run> runs)
     {
         var text = new StringBuilder();
-        text.AppendJoin(',', Column.All.Select(c => c.Unit.Length > 0 ? $"{c.Name} [{c.Unit}]" : c.Name)).Append('\n');
+        text.AppendJoin(',', Column.All.Select(c => c.Name)).Append('\n');
+        text.AppendJoin(',', Column.All.Select(c => c.Unit)).Append('\n');
         foreach (var run in runs)
             text.AppendJoin(',', Column.All.Select(c => c.Written(run) switch
             {
@@ -26,7 +27,8 @@ internal static class TextFiles
     {
         Encoding.RegisterProvider(CodePagesEncodingProvider.Instance);
         var text = new StringBuilder();
-        text.AppendJoin(';', Column.All.Select(c => c.Unit.Length > 0 ? $"{c.Name} [{c.Unit}]" : c.Name)).Append("\r\n");
+        text.AppendJoin(';', Column.All.Select(c => c.Name)).Append("\r\n");
+        text.AppendJoin(';', Column.All.Select(c => c.Unit)).Append("\r\n");
         foreach (var run in runs)
             text.AppendJoin(';', Column.All.Select(c => c.Written(run) switch
             {
@@ -41,7 +43,7 @@ internal static class TextFiles
     /// <summary>What the city meter would have shown where it dropped out.</summary>
     public static byte[] Truth(IReadOnlyList<Run> runs)
     {
-        var text = new StringBuilder("Run,Vehicle,City consumption [L/100 km]\n");
+        var text = new StringBuilder("Run,Vehicle,City consumption\n");
         foreach (var run in runs.Where(r => r.Lost.Contains(Column.City)))
             text.Append(run.Name).Append(',').Append(run.Vehicle.Label).Append(',').Append(run.City.ToString("0.00")).Append('\n');
         return Encoding.UTF8.GetBytes(text.ToString());
