@@ -13,6 +13,7 @@ internal static class ApiRoutes
         runSets.MapGroups();
         runSets.MapPairs();
         runSets.MapInfluences();
+        runSets.MapCurves();
         app.MapOpenApi();
     }
 }
