@@ -87,7 +87,7 @@ internal sealed class Intake(IRunSetStore store, WaitingFiles waiting, PortalSet
     /// <summary>Loads the demo season into an empty store; a demo that cannot be read is said in the log and never stops the start.</summary>
     public async Task LoadDemoAsync(string folder, CancellationToken cancel)
     {
-        string? path = Directory.Exists(folder) ? Directory.EnumerateFiles(folder, "*.csv").Order(StringComparer.Ordinal).FirstOrDefault(p => p.Contains("season", StringComparison.Ordinal)) : null;
+        string? path = Directory.Exists(folder) ? Directory.EnumerateFiles(folder, "*.csv").Order(StringComparer.Ordinal).FirstOrDefault(p => Path.GetFileName(p).Contains("season", StringComparison.Ordinal)) : null;
         if (path is null || (await store.ListAsync(cancel)).Count > 0)
             return;
         try
