@@ -14,6 +14,7 @@ internal static class ApiRoutes
         runSets.MapPairs();
         runSets.MapInfluences();
         runSets.MapCurves();
+        runSets.MapFill();
         app.MapOpenApi();
     }
 }
