@@ -77,6 +77,9 @@ public sealed record ReadChoices
     /// <summary>Order of the parts of dates, for all columns.</summary>
     public DateOrder? DateOrder { get; init; }
 
+    /// <summary>Keeps spellings of a category apart that differ only in capitals or blanks, even where one is rare.</summary>
+    public bool KeepSpellings { get; init; }
+
     /// <summary>Overrides for single columns, by name.</summary>
     public IReadOnlyList<ColumnChoice> Columns { get; init; } = [];
 

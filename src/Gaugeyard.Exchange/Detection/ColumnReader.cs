@@ -184,7 +184,7 @@ internal sealed class ColumnReader
 
     private ColumnReading BuildCoded(ColumnKind kind, string why, string[] first)
     {
-        bool exact = kind == ColumnKind.Text;
+        bool exact = kind == ColumnKind.Text || _ask.Exact;
         var levels = new List<string>();
         var index = new Dictionary<string, int>(StringComparer.Ordinal);
         int Level(string text)
@@ -221,7 +221,7 @@ internal sealed class ColumnReader
                 int i = RawColumn.CodeOf(cell);
                 if (codeOf[i] == int.MinValue)
                 {
-                    codeOf[i] = _missing[i] ? -1 : Level(FormulaText.Undo(exact ? _raw.Texts[i] : _trimmed[i]));
+                    codeOf[i] = _missing[i] ? -1 : Level(TextOf(i, exact));
                     if (_missing[i] && !_blank[i])
                         Unread(i, true, "");
                 }
@@ -237,8 +237,8 @@ internal sealed class ColumnReader
             codes[row] = code;
             known += code >= 0 ? 1 : 0;
         }
-        if (kind == ColumnKind.Category && levels.Count <= 5000)
-            ReportVariants(levels, codes);
+        if (kind == ColumnKind.Category && !_ask.Exact && levels.Count <= 5000)
+            JoinVariants(levels, codes);
         if (kind == ColumnKind.OrderedCategory && order is null)
             order = levels;
         var definition = Definition(kind) with { Levels = kind == ColumnKind.OrderedCategory ? [.. levels] : null };
@@ -246,6 +246,12 @@ internal sealed class ColumnReader
             _findings.Add(new Finding(Severity.Warning, _ask.Name, null, $"column {_ask.Name} holds {levels.Count - said.Count} texts beyond the given order ({Quote(levels.Skip(said.Count))}); they are put above it"));
         int used = levels.Count;
         return Done(new CodedColumn(definition, [.. levels], codes), why, first, known) with { Unique = known == _raw.Count && used == known && known > 0 };
+    }
+
+    private string TextOf(int code, bool exact)
+    {
+        string text = exact ? _raw.Texts[code] : _trimmed[code];
+        return _ask.Guarded ? FormulaText.Undo(text) : text;
     }
 
     private HashSet<double> PlainLevels()
@@ -257,11 +263,12 @@ internal sealed class ColumnReader
         return distinct;
     }
 
-    // spellings that differ only in capitals or inner blanks are pointed out, never merged silently
-    private void ReportVariants(List<string> levels, int[] codes)
+    // Spellings that differ only in capitals or inner blanks are pointed out. A rare one is read as the common one, with the
+    // file's own spelling kept at the cell; where none is clearly the common one they stay apart.
+    private void JoinVariants(List<string> levels, int[] codes)
     {
         var groups = levels.Select((l, i) => (Key: string.Join(' ', l.ToUpperInvariant().Split([' ', '-', '_', '\u00a0'], StringSplitOptions.RemoveEmptyEntries)), Code: i))
-            .GroupBy(x => x.Key).Where(g => g.Count() > 1).Take(Reported).ToList();
+            .GroupBy(x => x.Key).Where(g => g.Count() > 1).ToList();
         if (groups.Count == 0)
             return;
         var counts = new int[levels.Count];
@@ -272,12 +279,44 @@ internal sealed class ColumnReader
                 counts[codes[row]]++;
                 firsts[codes[row]] = row;
             }
+        var into = Enumerable.Range(0, levels.Count).ToArray();
+        int told = 0;
         foreach (var group in groups)
         {
-            var rare = group.OrderBy(x => counts[x.Code]).First();
-            _findings.Add(new Finding(Severity.Warning, _ask.Name, firsts[rare.Code] + 1,
-                $"column {_ask.Name}: {string.Join(" and ", group.Select(x => $"'{levels[x.Code]}' ({counts[x.Code]:N0})"))} differ only in capitals or blanks; they are kept apart"));
+            var byCount = group.Select(x => x.Code).OrderByDescending(c => counts[c]).ToList();
+            int common = byCount[0];
+            var rare = byCount.Skip(1).Where(c => !_ask.File.KeepSpellings && counts[c] * 4 <= counts[common]).ToList();
+            foreach (int code in rare)
+                into[code] = common;
+            string all = string.Join(" and ", byCount.Select(c => $"'{levels[c]}' ({counts[c]:N0})"));
+            if (++told <= Reported)
+                _findings.Add(new Finding(Severity.Warning, _ask.Name, firsts[byCount[^1]] + 1, rare.Count == byCount.Count - 1
+                    ? $"column {_ask.Name}: {all} differ only in capitals or blanks; they are read as '{levels[common]}', the file's spelling is kept at the cell"
+                    : $"column {_ask.Name}: {all} differ only in capitals or blanks; they are kept apart"));
         }
+        if (Enumerable.Range(0, into.Length).All(c => into[c] == c))
+            return;
+        for (int row = 0; row < codes.Length; row++)
+            if (codes[row] >= 0 && into[codes[row]] != codes[row])
+            {
+                _marks[row + 1] = new CellMark(CellState.Measured) { Original = levels[codes[row]], Reason = "another spelling of the same" };
+                codes[row] = into[codes[row]];
+            }
+        // levels keep the order of first appearance among those that are left
+        var left = new List<string>();
+        var renumber = new int[levels.Count];
+        foreach (int code in Enumerable.Range(0, levels.Count).Where(c => into[c] == c).OrderBy(c => group0(c)))
+        {
+            renumber[code] = left.Count;
+            left.Add(levels[code]);
+        }
+        for (int row = 0; row < codes.Length; row++)
+            if (codes[row] >= 0)
+                codes[row] = renumber[codes[row]];
+        levels.Clear();
+        levels.AddRange(left);
+
+        int group0(int common) => Enumerable.Range(0, firsts.Length).Where(c => into[c] == common && counts[c] > 0).Select(c => firsts[c]).DefaultIfEmpty(int.MaxValue).Min();
     }
 
     private ColumnDefinition Definition(ColumnKind kind) => new(_ask.Name, kind) { Role = _ask.Choice?.Role ?? ColumnRole.Attribute, Unit = _ask.Choice?.Unit is { Length: > 0 } unit ? UnitText.Find(unit) ?? unit : null };
@@ -300,6 +339,7 @@ internal sealed class ColumnReader
             Evidence = Capital(why) + missing + ".",
             FirstValues = first,
             Known = known,
+            FarCodes = _farCodes,
         };
     }
 
@@ -320,6 +360,7 @@ internal sealed class ColumnReader
         return best;
     }
 
+    private readonly HashSet<double> _farCodes = [];
     private readonly Dictionary<int, string> _unread = [];
 
     // notes that a distinct text has no value here: as a missing code, or as a text that could not be read
@@ -542,7 +583,8 @@ internal sealed class ColumnReader
             int count = 0;
             foreach (double value in values)
                 count += double.IsNaN(value) ? 0 : 1;
-            string evidence = why + (Mark == ',' ? " with a decimal comma" : "") + (how.Length > 0 ? $"; {how}" : "");
+            bool commas = Mark == ',' && (raw.DecimalMark == ',' && raw.Decimals > 0 || Enumerable.Range(1, raw.Texts.Count - 1).Any(i => _is[i] && raw.Texts[i].Contains(',', StringComparison.Ordinal)));
+            string evidence = why + (commas ? " with a decimal comma" : "") + (how.Length > 0 ? $"; {how}" : "");
             var definition = _of.Definition(ColumnKind.Number);
             if (ask.Choice?.Unit is null)
                 definition = definition with { Unit = unit };
@@ -657,6 +699,7 @@ internal sealed class ColumnReader
             }
             if (codes.Count == 0)
                 return;
+            _of._farCodes.UnionWith(codes);
             var read = codes.ToDictionary(c => c, _ => (First: -1, Count: 0));
             for (int row = 0; row < values.Length; row++)
                 if (codes.Contains(values[row]))

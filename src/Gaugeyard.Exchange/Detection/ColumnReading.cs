@@ -15,6 +15,12 @@ internal sealed record ColumnQuestion(string Name, string UnitCell, ColumnChoice
     /// <summary>Texts that mean missing because a user said so; null when the usual ones hold.</summary>
     public IReadOnlyList<string>? SaidMissing => Choice?.MissingCodes ?? File.MissingCodes;
 
+    /// <summary>Whether texts are taken with every blank and no spelling joined, as in a hand-over read back.</summary>
+    public bool Exact { get; init; }
+
+    /// <summary>Whether the file may guard texts with an apostrophe, as delimited files do.</summary>
+    public bool Guarded { get; init; }
+
     public IReadOnlyList<string> Words { get; } = NameWords.Split(Name);
 }
 
@@ -38,6 +44,9 @@ internal sealed record ColumnReading
     public bool? Unique { get; init; }
 
     public int Known { get; init; }
+
+    /// <summary>Numbers read as missing because they lie far outside the others.</summary>
+    public IReadOnlySet<double> FarCodes { get; init; } = new HashSet<double>();
 
     public ColumnReading With(ColumnDefinition definition) => this with { Column = Column.With(definition) };
 }

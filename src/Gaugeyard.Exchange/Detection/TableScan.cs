@@ -1,3 +1,4 @@
+using Gaugeyard.Exchange.Handover;
 using Gaugeyard.Exchange.Spreadsheets;
 using Gaugeyard.Exchange.Text;
 using Gaugeyard.Records.Columns;
@@ -38,7 +39,21 @@ internal static class TableScan
         if (source.Head.Count == 0)
             throw new UnreadableFileException($"{file.Name} is empty: it has no line with text. Export it again and upload the new file.");
 
+        var user = choices;
+        var dictionary = workbook is null ? null : HandoverDictionary.TryRead(file, workbook.Sheets, choices.Sheet, cancellationToken);
+        if (dictionary is not null && workbook!.Sheet != HandoverWorkbook.Records)
+            dictionary = null;
+        if (dictionary is not null)
+            choices = HandoverReturn.ChoicesOf(dictionary, user);
         var layout = Layout.Find(source.Head, choices, source.Merged);
+        if (text is not null)
+            layout = layout with { Names = [.. layout.Names.Select(FormulaText.Undo)] };
+        // the number of the record is no column of the run set, and must not take a name from one
+        if (dictionary is not null)
+            layout.Names[0] = HandoverReturn.RecordColumn;
+        foreach (var entry in dictionary?.Columns ?? [])
+            if (entry.Value < layout.Names.Length)
+                layout.Names[entry.Value] = entry.Definition.Name;
         if (layout.Names.Length > limits.Columns)
             throw new UnreadableFileException($"{file.Name} has {layout.Names.Length:N0} columns; at most {limits.Columns:N0} are taken. Check the separator, or leave out columns that are not needed.");
 
@@ -51,7 +66,7 @@ internal static class TableScan
         leftOut.AddRange(raw.Repeats.Select(row => new LeftOutRow(row, string.Join(" | ", layout.Names.Take(5)), "repeats the names")));
         if (raw.Repeats.Count > 0)
             findings.Add(new Finding(Severity.Note, null, null, $"row {raw.Repeats[0]} repeats the column names{(raw.Repeats.Count > 1 ? $", like {raw.Repeats.Count - 1} more" : "")}; left out"));
-        if (raw.Ended)
+        if (raw.Ended && dictionary is null)
             Totals.CutOff(raw, leftOut, findings);
         if (raw.Count == 0)
             throw HeaderOnly(file, layout);
@@ -68,7 +83,7 @@ internal static class TableScan
         var choiceOf = ChoicesByName(choices, names, findings);
 
         object Judge(int k, RawColumn column) => ColumnReader.Judge(
-            new ColumnQuestion(names[k], kept[k] < layout.Units.Length ? layout.Units[kept[k]] : "", choiceOf[k], choices, source.UsualDecimalMark, workbook?.From1904 ?? false), column, raw.Rows);
+            new ColumnQuestion(names[k], kept[k] < layout.Units.Length ? layout.Units[kept[k]] : "", choiceOf[k], choices, source.UsualDecimalMark, workbook?.From1904 ?? false) { Guarded = text is not null, Exact = dictionary is not null }, column, raw.Rows);
         var judged = new object[kept.Count];
         Parallel.For(0, kept.Count, new ParallelOptions { CancellationToken = cancellationToken }, k => judged[k] = Judge(k, raw.Columns[kept[k]]));
         for (int round = 0; round < 3 && judged.Any(j => j is ReadAgain); round++)
@@ -93,7 +108,21 @@ internal static class TableScan
         var readings = judged.Select(j => (ColumnReading)j).ToList();
 
         var doubts = new List<Doubt>(readings.SelectMany(r => r.Doubts));
-        Gallons.Settle(readings, doubts, findings);
+        var setAside = new Dictionary<int, string>();
+        if (dictionary is not null)
+        {
+            readings = HandoverReturn.FromWorkbook(c => kept.IndexOf(c) is >= 0 and var k ? readings[k] : null, dictionary, user, setAside, findings);
+            choiceOf = [.. readings.Select(r => choices.Columns.First(c => c.Name == r.Column.Name))];
+        }
+        else if (text is not null)
+        {
+            HandoverReturn.FromCompanions(readings, setAside, findings);
+            if (readings.Count < choiceOf.Length)
+                choiceOf = [.. readings.Select(r => choiceOf[Array.IndexOf(names, r.Column.Name)])];
+        }
+        FileCodes.Apply(readings, choiceOf, choices, layout.Above, raw.Rows);
+        if (dictionary is null)
+            Gallons.Settle(readings, doubts, findings);
         Roles.Guess(readings, choiceOf);
         findings.AddRange(readings.SelectMany(r => r.Findings));
 
@@ -118,12 +147,13 @@ internal static class TableScan
             Findings = findings,
             Records = records,
             OnlyBeginning = !raw.Ended,
+            IsHandover = dictionary is not null,
         };
         progress?.Report(1);
         return new ImportedTable(
             [.. readings.Select(r => r.Column)],
             readings.Where(r => r.Marks.Count > 0).ToDictionary(r => r.Column.Name, r => (IReadOnlyDictionary<int, CellMark>)r.Marks, StringComparer.Ordinal),
-            new Dictionary<int, string>(),
+            setAside,
             findings,
             reading) { ReadAs = Resolved(reading, choices) };
     }
