@@ -53,7 +53,7 @@ projects=$(ls -d tests/*.Tests | grep -v Browser; ls -d tests/*Browser.Tests)
 for project in $projects; do
   name=$(basename "$project")
   echo "--- $name"
-  (cd "$project" && dotnet "bin/Release/net10.0/$name.dll" --no-ansi --no-progress) >"$log" 2>&1
+  (cd "$project" && dotnet "bin/Release/net10.0/$name.dll" --no-ansi --progress off) >"$log" 2>&1
   code=$?
   figure() { sed -nE "s/^ *$1: *([0-9]+).*/\1/p" "$log" | tail -n 1; }
   ok=$(figure succeeded) bad=$(figure failed) left=$(figure skipped)
