@@ -12,13 +12,15 @@ internal sealed class Problems(ILogger<Problems> log) : IExceptionHandler
 {
     public async ValueTask<bool> TryHandleAsync(HttpContext context, Exception exception, CancellationToken cancellationToken)
     {
-        if (!context.Request.Path.StartsWithSegments("/api") || context.Response.HasStarted)
+        // the handler middleware has put its own page in the request's path by now
+        PathString asked = context.Features.Get<IExceptionHandlerPathFeature>()?.Path ?? context.Request.Path;
+        if (!asked.StartsWithSegments("/api") || context.Response.HasStarted)
             return false;
         if (exception is OperationCanceledException && context.RequestAborted.IsCancellationRequested)
             return true;
         var problem = Of(exception);
         if (problem.Status == 500)
-            log.LogError(exception, "Unexpected failure at {Path}", context.Request.Path);
+            log.LogError(exception, "Unexpected failure at {Path}", asked);
         await WriteAsync(context, problem).ConfigureAwait(false);
         return true;
     }
