@@ -17,6 +17,9 @@ internal static class Explanations
     /// <summary>Fewer stand-outs than this share nothing that could not be chance.</summary>
     private const int Fewest = 3;
 
+    /// <summary>A shift below half a usual spread is no explanation, however sure.</summary>
+    private const double LeastShift = 0.5;
+
     public static List<StandoutExplanation> Of(Sample sample, bool[] off, IReadOnlyCollection<string> passOver, CancellationToken cancel)
     {
         var found = new List<(StandoutExplanation E, double P)>();
@@ -45,8 +48,9 @@ internal static class Explanations
         }
         double[] adjusted = AdjustedP.Holm([.. found.Select(f => f.P)]);
         return [.. found.Select((f, i) => f.E with { P = adjusted[i] })
-            .Where(e => e.P < 0.05 && (e.ShareIn is null || e.ShareIn > e.ShareOut))
-            .OrderBy(e => e.P).ThenByDescending(e => Math.Abs(e.Shift ?? 0))];
+            .Where(e => e.P < 0.05 && (e.ShareIn is null ? Math.Abs(e.Shift!.Value) >= LeastShift : e.ShareIn > e.ShareOut))
+            // what was counted by vehicle can be trusted more than what was counted by run
+            .OrderBy(e => e.Counted == "runs").ThenBy(e => e.P).ThenByDescending(e => Math.Abs(e.Shift ?? 0))];
     }
 
     private static void Levels(string column, int[] codes, bool[] off, string[] levels, string counted, List<(StandoutExplanation, double)> found)

@@ -9,11 +9,13 @@ internal sealed class Judged
     private readonly double[][]? _centers;
     private readonly int[]? _among;
     private readonly double[] _within;
+    private readonly double _ordinary;
 
     private Judged(double[][] values, double[][] centered, int[]? among, double[][]? centers, McdResult mcd, double m, double[] p, double[] q)
     {
         (_values, _centered, _among, _centers, Mcd, P, Q) = (values, centered, among, centers, mcd, p, q);
         _within = new double[mcd.P + 1];
+        _ordinary = Statistics.Outliers.DistanceCut.SquaredDistance(0.05, mcd.P, m);
         for (int k = 1; k < mcd.P; k++)
             _within[k] = Statistics.Outliers.DistanceCut.SquaredDistance(0.025, k, m);
     }
@@ -55,17 +57,54 @@ internal sealed class Judged
     }
 
     /// <summary>The cells that make a unit stand off.</summary>
-    public IReadOnlyList<StandoutCell> Cells(int i, IReadOnlyList<string> names, IReadOnlyList<IReadOnlyList<UnitReading>> units, bool entries)
+    /// <param name="usual">What the other runs of its vehicle read, per reading, NaN where that is not known; null when slips of entry are not looked for.</param>
+    public IReadOnlyList<StandoutCell> Cells(int i, IReadOnlyList<string> names, IReadOnlyList<IReadOnlyList<UnitReading>> units, IReadOnlyList<string?> unitCodes, double[]? usual)
     {
         var record = new double[names.Count];
         for (int j = 0; j < record.Length; j++)
             record[j] = _centered[j][i];
+        var exchanged = usual is null ? null : Exchanged(record, i, names, unitCodes);
         return [.. CellBlame.Of(record, Mcd.Center, Mcd.Covariance, _within).Select(c =>
         {
-            double value = _values[c.Reading][i], expected = c.Expected + (_centers is null ? 0 : _centers[c.Reading][_among![i]]);
-            var slip = entries ? EntrySuspects.Find(value, expected, c.Spread, units[c.Reading]) : null;
+            double shift = _centers is null ? 0 : _centers[c.Reading][_among![i]], value = _values[c.Reading][i], expected = c.Expected + shift;
+            if (exchanged is { } pair && (pair.A == c.Reading || pair.B == c.Reading))
+            {
+                int other = pair.A == c.Reading ? pair.B : pair.A;
+                return new StandoutCell(names[c.Reading], value, expected, c.Shift, $"exchanged with {names[other]}?", _values[other][i]);
+            }
+            var slip = usual is null ? null : EntrySuspects.Find(value, expected, c.Spread, units[c.Reading]);
+            if (slip is not null && !Plausible(slip.WouldBe, value, c.Reading, shift, usual![c.Reading]))
+                slip = null;
             return new StandoutCell(names[c.Reading], value, expected, c.Shift, slip is null ? null : StandoutWords.Slip(slip), slip?.WouldBe);
         })];
+    }
+
+    /// <summary>
+    /// A slip is thought of only where it brings the value into the bulk of its reading, and, where the vehicle has other runs, to them: a vehicle that
+    /// reads so in every run was not mistyped every time.
+    /// </summary>
+    private bool Plausible(double wouldBe, double value, int reading, double shift, double usual) =>
+        Math.Abs(wouldBe - shift - Mcd.Center[reading]) <= 3 * Math.Sqrt(Mcd.Covariance[reading, reading])
+        && !(Math.Abs(value - usual) <= Math.Abs(wouldBe - usual));
+
+    /// <summary>Two readings of the same unit that would be ordinary in each other's place.</summary>
+    private (int A, int B)? Exchanged(double[] record, int i, IReadOnlyList<string> names, IReadOnlyList<string?> unitCodes)
+    {
+        double best = _ordinary;
+        (int, int)? found = null;
+        for (int a = 0; a < names.Count; a++)
+            for (int b = 0; b < a; b++)
+            {
+                if (unitCodes[a] is null || unitCodes[a] != unitCodes[b] || _values[a][i] == _values[b][i])
+                    continue;
+                var swapped = (double[])record.Clone();
+                double ca = _centers is null ? 0 : _centers[a][_among![i]], cb = _centers is null ? 0 : _centers[b][_among![i]];
+                (swapped[a], swapped[b]) = (_values[b][i] - ca, _values[a][i] - cb);
+                double d = CellBlame.SquaredDistance(swapped, Mcd.Center, Mcd.Covariance);
+                if (d < best && Mcd.RawDistances[i] > 4 * best)
+                    (best, found) = (d, (a, b));
+            }
+        return found;
     }
 
     private static double[][] Centers(double[][] values, int[] among, int levels)

@@ -47,7 +47,9 @@ public sealed record StandoutsQuestion : Question<StandoutsAnswer>
         bool byVehicle = sample.VehiclesRepeat;
         var units = Readings.Select(r => EntryUnits.Of(content.Find(r)!.Unit)).ToArray();
         var unitOf = Readings.Distinct(StringComparer.Ordinal).ToDictionary(r => r, r => content.Find(r)!.Unit, StringComparer.Ordinal);
-        string like = Among is null ? "what its other readings suggest" : $"its like ({Among})";
+        string like = Among is null ? "what its other readings suggest" : "its like";
+        string?[] unitCodes = [.. Readings.Select(r => content.Find(r)!.Unit)];
+        int[][]? runsOf = byVehicle ? RunsOf(sample) : null;
 
         var vehicles = byVehicle ? JudgeVehicles(sample, values, units, unitOf, like, notes, work) : null;
         bool onlyVehicles = Count == CountBy.Vehicle && byVehicle;
@@ -69,7 +71,7 @@ public sealed record StandoutsQuestion : Question<StandoutsAnswer>
             sample.Require(Label);
         var records = order.Take(MostListed).Select(i =>
         {
-            var cells = judged.Cells(i, Readings, units, entries: true);
+            var cells = judged.Cells(i, Readings, units, unitCodes, Usual(values, i, runsOf?[sample.VehicleOf![i]]));
             return new StandoutRecord(sample.RecordAt(i), LabelOf(sample, i), judged.Distance(i), judged.P[i], [.. cells.Select(c => c.Column)])
             {
                 Vehicle = sample.VehicleOf is null ? null : sample.VehicleNames![sample.VehicleOf[i]],
@@ -156,7 +158,7 @@ public sealed record StandoutsQuestion : Question<StandoutsAnswer>
             .DistinctBy(k => cells[k].Key.Vehicle)
             .Select(k =>
             {
-                var blamed = judged.Cells(k, Readings, units, entries: false);
+                var blamed = judged.Cells(k, Readings, units, [], usual: null);
                 return new StandoutVehicle(sample.VehicleNames![cells[k].Key.Vehicle], cells[k].Count(), 0, judged.Distance(k), judged.P[k], judged.Q[k], [.. blamed.Select(c => c.Column)])
                 {
                     Details = blamed,
@@ -165,6 +167,18 @@ public sealed record StandoutsQuestion : Question<StandoutsAnswer>
                 };
             })];
     }
+
+    private static int[][] RunsOf(Sample sample)
+    {
+        var runs = new List<int>[sample.VehicleCount!.Value];
+        for (int i = 0; i < sample.Count; i++)
+            (runs[sample.VehicleOf![i]] ??= []).Add(i);
+        return [.. runs.Select(r => r.ToArray())];
+    }
+
+    /// <summary>The median of the vehicle's other runs, per reading; NaN below two of them.</summary>
+    private static double[] Usual(double[][] values, int i, int[]? runs) =>
+        [.. values.Select(x => runs is null || runs.Length < 3 ? double.NaN : RobustScale.Median([.. runs.Where(k => k != i).Select(k => x[k])]))];
 
     private List<PairCorrelation> Correlate(Sample sample, double[][] values, CancellationToken cancel)
     {

@@ -60,6 +60,21 @@ public static class CellBlame
         return [.. cells.OrderByDescending(c => Math.Abs(c.Shift))];
     }
 
+    /// <summary>Squared Mahalanobis distance of one record.</summary>
+    /// <exception cref="ArgumentException">Lengths differ, or the covariance is not positive definite.</exception>
+    public static double SquaredDistance(ReadOnlySpan<double> record, double[] center, double[,] covariance)
+    {
+        int p = center.Length;
+        if (record.Length != p)
+            throw new ArgumentException($"record must have length {p} but has {record.Length}", nameof(record));
+        double[] k = Precision(covariance, [.. Enumerable.Range(0, p)]);
+        double sum = 0;
+        for (int a = 0; a < p; a++)
+            for (int b = 0; b < p; b++)
+                sum += (record[a] - center[a]) * k[a * p + b] * (record[b] - center[b]);
+        return sum;
+    }
+
     /// <summary>Mean and standard deviation of one reading given others.</summary>
     private static (double Mean, double Spread) Conditional(ReadOnlySpan<double> record, double[] center, double[,] covariance, int j, List<int> given)
     {
