@@ -661,3 +661,11 @@ function short(value, decimals) {
   const size = Math.abs(value);
   return size >= 1e6 || (size > 0 && size < 1e-4) ? value.toExponential(1).replace("-", "−") : say(value, Math.min(decimals, 6));
 }
+
+/** Hands a text to the person as a file. */
+export function saveText(name, text) {
+  const address = URL.createObjectURL(new Blob(["\ufeff", text], { type: "text/csv;charset=utf-8" })), a = document.createElement("a");
+  a.href = address; a.download = name;
+  a.click();
+  setTimeout(() => URL.revokeObjectURL(address), 10000);
+}
