@@ -12,7 +12,9 @@ internal static class WorkbookGate
 {
     /// <summary>What the workbook says about itself.</summary>
     /// <param name="From1904">Whether its serial days count from 1904.</param>
-    public sealed record Facts(bool From1904);
+    /// <param name="LastRow">Last row with a value in any sheet, from 1.</param>
+    /// <param name="LastColumn">Last column with a value in any sheet, from 0.</param>
+    public sealed record Facts(bool From1904, int LastRow, int LastColumn);
 
     public static Facts Check(Stream stream, string name, ReadLimits limits, CancellationToken cancellationToken)
     {
@@ -20,6 +22,7 @@ internal static class WorkbookGate
         byte[] block = new byte[1 << 16];
         long total = 0;
         bool from1904 = false;
+        var used = new UsedCells();
         if (archive.Entries.Count > 10_000)
             throw new UnreadableFileException($"{name} has {archive.Entries.Count:N0} parts, far more than a workbook needs. Save a copy with only the sheet of runs.");
         foreach (var entry in archive.Entries)
@@ -28,6 +31,7 @@ internal static class WorkbookGate
             if (!part.EndsWith(".xml", StringComparison.Ordinal) && !part.EndsWith(".rels", StringComparison.Ordinal))
                 continue;
             bool shared = part.EndsWith("sharedstrings.xml", StringComparison.Ordinal);
+            bool sheet = part.Contains("worksheets/", StringComparison.Ordinal);
             bool workbook = part == "xl/workbook.xml";
             using var inflating = entry.Open();
             long size = 0;
@@ -39,6 +43,8 @@ internal static class WorkbookGate
                 total += read;
                 if (total > limits.InflatedWorkbookBytes || shared && size > limits.SharedTextBytes)
                     throw new UnreadableFileException($"{name} inflates to more than {Sizes.Say(shared && size > limits.SharedTextBytes ? limits.SharedTextBytes : limits.InflatedWorkbookBytes)}, the limit for {(shared && size > limits.SharedTextBytes ? "the texts of " : "")}one workbook. Split it, or save the sheet as CSV.");
+                if (sheet)
+                    used.Look(block.AsSpan(0, read));
                 if (workbook && begin.Length < 1 << 20)
                     begin.Write(block, 0, read);
             }
@@ -49,6 +55,85 @@ internal static class WorkbookGate
             }
         }
         stream.Position = 0;
-        return new Facts(from1904);
+        return new Facts(from1904, used.LastRow, used.LastColumn);
+    }
+
+    /// <summary>
+    /// Follows the tags of a sheet to the last cell that holds a value. Sheets often have formats or rules down to the last row
+    /// and column; walking there cell by cell would take minutes.
+    /// </summary>
+    private sealed class UsedCells
+    {
+        private readonly byte[] _tag = new byte[200];
+        private int _length = -1;
+        private int _row;
+        private int _column;
+        private int _rowOfRow;
+
+        public int LastRow { get; private set; }
+
+        public int LastColumn { get; private set; } = -1;
+
+        public void Look(ReadOnlySpan<byte> bytes)
+        {
+            while (true)
+            {
+                if (_length < 0)
+                {
+                    int open = bytes.IndexOf((byte)'<');
+                    if (open < 0)
+                        return;
+                    bytes = bytes[(open + 1)..];
+                    _length = 0;
+                }
+                int close = bytes.IndexOf((byte)'>');
+                var part = close < 0 ? bytes : bytes[..close];
+                int room = Math.Min(part.Length, _tag.Length - _length);
+                part[..room].CopyTo(_tag.AsSpan(_length));
+                _length += room;
+                if (close < 0)
+                    return;
+                Tag(_tag.AsSpan(0, _length));
+                _length = -1;
+                bytes = bytes[(close + 1)..];
+            }
+        }
+
+        private void Tag(ReadOnlySpan<byte> tag)
+        {
+            int end = tag.IndexOfAny((byte)' ', (byte)'/');
+            var name = end < 0 ? tag : tag[..end];
+            int colon = name.IndexOf((byte)':');
+            name = name[(colon + 1)..];
+            if (name.SequenceEqual("row"u8))
+            {
+                _rowOfRow = Reference(tag) is { Length: > 0 } at && System.Buffers.Text.Utf8Parser.TryParse(at, out int row, out _) ? row : _rowOfRow + 1;
+                _column = -1;
+            }
+            else if (name.SequenceEqual("c"u8))
+            {
+                var at = Reference(tag);
+                int i = 0, column = 0;
+                while (i < at.Length && i < 4 && at[i] is >= (byte)'A' and <= (byte)'Z')
+                    column = column * 26 + (at[i++] - 'A' + 1);
+                _column = i > 0 ? column - 1 : _column + 1;
+                _row = i > 0 && System.Buffers.Text.Utf8Parser.TryParse(at[i..], out int row, out _) ? row : _rowOfRow;
+            }
+            else if (name.SequenceEqual("v"u8) || name.SequenceEqual("is"u8))
+            {
+                LastRow = Math.Max(LastRow, _row);
+                LastColumn = Math.Max(LastColumn, _column);
+            }
+        }
+
+        private static ReadOnlySpan<byte> Reference(ReadOnlySpan<byte> tag)
+        {
+            int at = tag.IndexOf(" r=\""u8);
+            if (at < 0)
+                return default;
+            var rest = tag[(at + 4)..];
+            int quote = rest.IndexOf((byte)'"');
+            return quote < 0 ? rest : rest[..quote];
+        }
     }
 }

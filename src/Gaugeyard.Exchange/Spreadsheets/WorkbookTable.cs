@@ -13,6 +13,8 @@ internal sealed class WorkbookTable : ITableSource
     private readonly ArrivingFile _file;
     private readonly ReadLimits _limits;
     private readonly CellRange? _range;
+    private readonly int _lastRow;
+    private readonly int _lastColumn;
 
     static WorkbookTable() => System.Text.Encoding.RegisterProvider(System.Text.CodePagesEncodingProvider.Instance);
 
@@ -22,7 +24,14 @@ internal sealed class WorkbookTable : ITableSource
         _limits = limits;
         _range = choices.Range is null ? null : CellRange.Parse(choices.Range, file.Name);
         using (var stream = file.Open())
-            From1904 = WorkbookGate.Check(stream, file.Name, limits, cancellationToken).From1904;
+        {
+            var facts = WorkbookGate.Check(stream, file.Name, limits, cancellationToken);
+            From1904 = facts.From1904;
+            _lastRow = facts.LastRow;
+            _lastColumn = facts.LastColumn;
+        }
+        if (_range is null && _lastColumn >= limits.Columns)
+            throw TooWide(_lastRow, _lastColumn + 1);
         using var reader = OpenReader();
         var names = new List<string>();
         var heads = new List<(string Name, bool Hidden, List<HeadRow> Rows, List<(int, int, int)> Merged)>();
@@ -81,8 +90,8 @@ internal sealed class WorkbookTable : ITableSource
         var repeats = new List<int>();
         (int First, int Count) ragged = default;
         bool ended = true;
-        int number = 0, hidden = 0, total = Math.Max(1, reader.RowCount);
-        while (reader.Read())
+        int number = 0, hidden = 0, total = Math.Max(1, Math.Min(reader.RowCount, _lastRow));
+        while (number < _lastRow && reader.Read())
         {
             number++;
             if (number < layout.FirstDataRow || _range is { } range && number > range.LastRow)
@@ -145,7 +154,7 @@ internal sealed class WorkbookTable : ITableSource
         var rows = new List<HeadRow>();
         var texts = new List<HeadRow>();
         int number = 0;
-        while (rows.Count < HeadRows && reader.Read())
+        while (rows.Count < HeadRows && number < _lastRow && reader.Read())
         {
             number++;
             if ((number & 1023) == 0)
@@ -178,7 +187,7 @@ internal sealed class WorkbookTable : ITableSource
 
     private int LastFilled(IExcelDataReader reader)
     {
-        int last = Math.Min(reader.FieldCount - 1, _range?.LastColumn ?? int.MaxValue);
+        int last = Math.Min(Math.Min(reader.FieldCount - 1, _lastColumn), _range?.LastColumn ?? int.MaxValue);
         while (last >= 0 && reader.GetValue(last) is null or "")
             last--;
         return last;
