@@ -22,7 +22,7 @@ public sealed record FillPlanQuestion : Question<FillPlanAnswer>
         string? unit = content.Find(Reading)!.Unit;
         var way = FillSetup.WayOf(Way);
         var conformal = CrossConformal.Of(way, setup.Data, setup.Known, 0, Confidence, Seed, work.Stage(0, 0.9, $"training {FillSetup.WordOf(Way)} with vehicles left out"), work.Cancel);
-        var range = TestedRange.Of(setup.Data, setup.Known);
+        var range = TestedRange.Of(setup.Data, setup.Known, way.Uses(setup.Data, setup.Known));
         var filled = new List<PlannedCell>();
         var refused = new List<RefusedCell>();
         foreach (int i in setup.Missing)

@@ -45,9 +45,15 @@ public sealed record FillTrialQuestion : Question<FillTrialAnswer>
             results.Add(Result(tried[w], shown, setup, grouping));
             notes.AddRange(setup.CarriedNotes(tried[w]));
         }
+        // ways that refuse more are spared the hardest readings: the choice between them rests on the readings that none refused
+        var shared = Enumerable.Range(0, setup.Known.Length).Where(k => truths.Values.All(t => t[k].Estimate is not null)).ToList();
+        for (int w = 0; w < results.Count; w++)
+            results[w] = results[w] with { SharedRmse = shared.Count == 0 ? null : Math.Sqrt(shared.Average(k => Math.Pow(truths[results[w].Way][k].Estimate!.Value - truths[results[w].Way][k].Truth, 2))) };
+        if (shared.Count > 0 && shared.Count < setup.Known.Length)
+            notes.Add($"Ways refuse different readings. On the {shared.Count} that none refused: {string.Join(", ", results.OrderBy(r => r.SharedRmse).Select(r => $"{FillSetup.WordOf(r.Way)} {Say.Number(r.SharedRmse ?? 0, Say.DecimalsFor(r.SharedRmse ?? 1))}"))}; the recommendation rests on these.");
         var floor = results.First(r => r.Way == FillBy.GroupMean);
-        var best = results.Where(r => r.Way != FillBy.GroupMean && r.Rmse is not null).DefaultIfEmpty(floor).MinBy(r => r.Rmse)!;
-        bool worth = best.Rmse < floor.Rmse;
+        var best = results.Where(r => r.Way != FillBy.GroupMean && r.Rmse is not null).DefaultIfEmpty(floor).MinBy(r => r.SharedRmse ?? r.Rmse)!;
+        bool worth = (best.SharedRmse ?? best.Rmse) < (floor.SharedRmse ?? floor.Rmse);
         var recommended = worth ? best.Way : FillBy.GroupMean;
         notes.AddRange(Warnings(setup, content));
         return new FillTrialAnswer
@@ -209,6 +215,9 @@ public sealed record WayResult(FillBy Way, double? Bias, double? Mae, double? Rm
     public double? CoverageLow { get; init; }
 
     public double? CoverageHigh { get; init; }
+
+    /// <summary>Root mean square error on the readings that no way refused.</summary>
+    public double? SharedRmse { get; init; }
 
     public int Vehicles { get; init; }
 }

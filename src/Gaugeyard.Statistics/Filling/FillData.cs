@@ -37,6 +37,9 @@ public interface IFillWay
     /// <summary>Name in the interface, for example "group-mean".</summary>
     string Name { get; }
 
+    /// <summary>Predictors this way goes by: only their tested range bounds it. All by default.</summary>
+    string[] Uses(FillData data, int[] rows) => [.. data.Terms.Select(t => t.Variable!)];
+
     /// <summary>Learns from records whose reading and predictors are known.</summary>
     IFillFit Train(FillData data, int[] rows, CancellationToken cancel);
 }

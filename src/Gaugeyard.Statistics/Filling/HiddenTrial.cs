@@ -30,7 +30,7 @@ public static class HiddenTrial
         {
             cancel.ThrowIfCancellationRequested();
             int[] train = [.. rows.Where(i => part[data.Vehicles[i]] != f)];
-            var range = TestedRange.Of(data, train);
+            var range = TestedRange.Of(data, train, way.Uses(data, train));
             var conformal = CrossConformal.Of(way, data, train, 10, confidence, seed, null, cancel);
             Parallel.For(0, rows.Length, new ParallelOptions { CancellationToken = cancel, MaxDegreeOfParallelism = Environment.ProcessorCount }, r =>
             {

@@ -12,27 +12,29 @@ public sealed class TestedRange
     private readonly LinearFit? _fit;
     private readonly double _leverage;
 
-    private TestedRange(FillData data, int[] rows)
+    private TestedRange(FillData data, int[] rows, string[] variables)
     {
         _data = data;
-        foreach (string n in data.Numbers)
+        foreach (string n in data.Numbers.Intersect(variables))
             _ranges[n] = (rows.Min(i => data.Predictors.Numbers[n][i]), rows.Max(i => data.Predictors.Numbers[n][i]));
-        foreach (string c in data.Categories)
+        foreach (string c in data.Categories.Intersect(variables))
         {
             var (codes, levels) = data.Predictors.Categories[c];
             _levels[c] = new bool[levels.Length];
             foreach (int i in rows)
                 _levels[c][codes[i]] = true;
         }
-        if (data.Terms.Count == 0)
+        var terms = data.Terms.Where(t => variables.Contains(t.Variable)).ToList();
+        // without a number there is no combination of conditions to lie outside of
+        if (!terms.Exists(t => t.Kind == TermKind.Number))
             return;
-        _design = Design.Of(data.Terms, data.Predictors.At(rows));
+        _design = Design.Of(terms, data.Predictors.At(rows));
         _fit = LinearFit.Of(_design.Columns, [.. rows.Select(i => data.Y[i])]);
         _leverage = _fit.Reason is null ? _fit.Leverage.Max() : double.PositiveInfinity;
     }
 
-    /// <summary>Range of the records a way learns from.</summary>
-    public static TestedRange Of(FillData data, int[] rows) => new(data, rows);
+    /// <summary>Range of the records a way learns from, in the predictors it goes by (all by default).</summary>
+    public static TestedRange Of(FillData data, int[] rows, string[]? variables = null) => new(data, rows, variables ?? [.. data.Terms.Select(t => t.Variable!)]);
 
     /// <summary>Why a record may not be filled, as a phrase; null when it may.</summary>
     public string? Refusal(int i)

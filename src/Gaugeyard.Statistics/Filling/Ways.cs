@@ -8,6 +8,8 @@ public sealed class GroupMeanWay : IFillWay
 {
     public string Name => "group-mean";
 
+    public string[] Uses(FillData data, int[] rows) => [.. data.Categories.Take(1)];
+
     public IFillFit Train(FillData data, int[] rows, CancellationToken cancel)
     {
         double all = rows.Average(i => data.Y[i]);
@@ -85,6 +87,8 @@ public sealed class LocalRegressionWay : IFillWay
 
     public string Name => "local-regression";
 
+    public string[] Uses(FillData data, int[] rows) => Carried(data, rows) is { Length: > 0 } numbers ? [.. numbers, .. data.Categories] : [.. data.Terms.Select(t => t.Variable!)];
+
     public IFillFit Train(FillData data, int[] rows, CancellationToken cancel)
     {
         string[] numbers = Carried(data, rows);
@@ -119,6 +123,8 @@ public sealed class LocalRegressionWay : IFillWay
 public sealed class SmoothingSplineWay : IFillWay
 {
     public string Name => "smoothing-spline";
+
+    public string[] Uses(FillData data, int[] rows) => LocalRegressionWay.Carried(data, rows, 1) is { Length: > 0 } numbers ? [.. numbers, .. data.Categories] : [.. data.Terms.Select(t => t.Variable!)];
 
     public IFillFit Train(FillData data, int[] rows, CancellationToken cancel)
     {
