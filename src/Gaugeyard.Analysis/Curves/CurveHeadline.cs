@@ -5,38 +5,68 @@ namespace Gaugeyard.Analysis.Curves;
 /// <summary>The finding about a curve as a sentence.</summary>
 internal static class CurveHeadline
 {
+    /// <summary>Change from the first point within the tested range to the last.</summary>
+    public static CurveChange? Change(CurveResult result)
+    {
+        if (result.Points.Count == 0 || result.Points[0].At.Count != 1)
+            return null;
+        int[] known = Known(result);
+        return known.Length < 2 ? null : Between(result, known[0], known[^1]);
+    }
+
     public static string Of(CurveQuestion question, string? unit, string? xUnit, CurveData data, CurveResult result)
     {
+        string reading = Say.Sentence(question.Reading), against = question.Against[0];
         if (question.Against.Count > 1)
-            return $"{Say.Sentence(question.Reading)} follows {Say.List(question.Against)} with a typical error of {Say.With(result.Smoothing.S ?? double.NaN, Say.DecimalsFor(result.Smoothing.S ?? 1), unit)} about the surface.";
-        var known = result.Points.Where(p => p.Fitted is not null).OrderBy(p => p.At[0]).ToList();
-        if (known.Count < 2)
-            return $"No point asked for lies in the tested range of {question.Against[0]}, {Say.Range(data.X[0].Min(), data.X[0].Max(), Say.DecimalsFor(data.X[0].Max() - data.X[0].Min()))}{Say.Unit(xUnit)}.";
-        var first = known[0];
-        var last = known[^1];
-        var highest = known.MaxBy(p => p.Fitted)!;
-        var lowest = known.MinBy(p => p.Fitted)!;
-        double change = last.Fitted!.Value - first.Fitted!.Value, sweep = highest.Fitted!.Value - lowest.Fitted!.Value;
-        int decimals = Say.DecimalsFor(known.Select(p => p.Se ?? double.NaN).Where(double.IsFinite).DefaultIfEmpty(sweep / 10).Average());
-        int xDecimals = Math.Max(0, Say.DecimalsFor((last.At[0] - first.At[0]) / 10) - 1);
-        string From(CurvePoint a, CurvePoint b) => $"from {Say.Number(a.At[0], xDecimals)} to {Say.With(b.At[0], xDecimals, xUnit)}";
-        string line = result.StraightLine is { Score: { } s, CurveScore: { } c } ? c < 0.97 * s ? "; a straight line misses this" : "; a straight line does as well" : "";
-        double noise = known.Select(p => p.Se ?? 0).Average();
-        if (sweep < 2 * noise)
-            return $"{Say.Sentence(question.Reading)} does not change visibly with {question.Against[0]} {From(first, last)}.";
-        string reading = Say.Sentence(question.Reading);
-        string Interval(CurvePoint a, CurvePoint b)
+            return result.Smoothing.S is { } s
+                ? $"{reading} follows {Say.List(question.Against)} with a typical error of {Say.With(s, Say.DecimalsFor(s), unit)} about the surface."
+                : $"{reading} follows {Say.List(question.Against)}; the curve runs along {against} with the others at their medians.";
+        int[] known = Known(result);
+        if (known.Length < 2)
+            return $"No point asked for lies in the tested range of {against}, {Say.Range(data.Low[0], data.High[0], Say.DecimalsFor(data.High[0] - data.Low[0]))}{Say.Unit(xUnit)}.";
+        int first = known[0], last = known[^1], highest = known.MaxBy(g => Value(result, g)), lowest = known.MinBy(g => Value(result, g));
+        double sweep = Value(result, highest) - Value(result, lowest);
+        double noise = known.Select(g => result.Points[g].Se ?? double.NaN).Where(double.IsFinite).DefaultIfEmpty(sweep / 20).Average();
+        int decimals = Math.Max(0, Say.DecimalsFor(Math.Max(noise, sweep * 1e-6)) - 1), xDecimals = Math.Max(0, Say.DecimalsFor((Place(result, last) - Place(result, first)) / 10) - 1);
+        string Where(int a, int b) => $"from {Say.Number(Place(result, a), xDecimals)} to {Say.With(Place(result, b), xDecimals, xUnit)}";
+        string Leg(int a, int b)
         {
-            // both ends vary, so their errors add in squares
-            if (a.Se is not { } sa || b.Se is not { } sb)
-                return "";
-            double z = Statistics.Numerics.Probability.NormalQuantile(0.5 + question.Confidence / 2), d = Math.Abs(b.Fitted!.Value - a.Fitted!.Value), half = z * Math.Sqrt(sa * sa + sb * sb);
-            return $" (about {Say.Range(d - half, d + half, decimals)})";
+            var change = Between(result, a, b);
+            string interval = change is { Low: { } low, High: { } high } ? $" ({Say.Range(change.Difference < 0 ? -high : low, change.Difference < 0 ? -low : high, decimals)})" : "";
+            return $"{(change.Difference < 0 ? "falls" : "rises")} {Say.With(Math.Abs(change.Difference), decimals, unit)} {Where(a, b)}{interval}";
         }
-        if (Math.Abs(change) > 0.8 * sweep)
-            return $"{reading} {(change > 0 ? "rises" : "falls")} {Say.With(Math.Abs(change), decimals, unit)} {From(first, last)}{Interval(first, last)}{line}.";
-        // it turns: say the larger leg
-        var turn = Math.Abs(lowest.Fitted.Value - first.Fitted.Value) + Math.Abs(lowest.Fitted.Value - last.Fitted.Value) > Math.Abs(highest.Fitted.Value - first.Fitted.Value) + Math.Abs(highest.Fitted.Value - last.Fitted.Value) ? lowest : highest;
-        return $"{reading} {(turn == lowest ? "is lowest" : "is highest")} near {Say.With(turn.At[0], xDecimals, xUnit)} ({Say.With(turn.Fitted!.Value, decimals, unit)}) and {(turn == lowest ? "rises" : "falls")} to {Say.Number(first.Fitted.Value, decimals)} at {Say.Number(first.At[0], xDecimals)} and {Say.Number(last.Fitted.Value, decimals)} at {Say.With(last.At[0], xDecimals, xUnit)}{line}.";
+        string line = result.StraightLine?.Misses switch { true => "; a straight line misses this", false => "; a straight line does about as well on unseen " + data.UnitWord, null => "" };
+        if (sweep < 2 * noise || sweep == 0)
+            return $"{reading} does not change visibly with {against} {Where(first, last)}.";
+        // an inner extreme counts as a turn when both legs are a fair part of the sweep
+        foreach (int turn in new[] { lowest, highest }.OrderByDescending(g => Math.Min(Math.Abs(Value(result, g) - Value(result, first)), Math.Abs(Value(result, g) - Value(result, last)))))
+            if (Math.Min(Math.Abs(Value(result, turn) - Value(result, first)), Math.Abs(Value(result, turn) - Value(result, last))) > Math.Max(0.2 * sweep, 2 * noise))
+                return $"{reading} {Leg(first, turn)}, then {Leg(turn, last)}{line}.";
+        string only = Level(result, known, sweep, noise) is { } level ? $"{Leg(first, level)}, then stays level" : Leg(first, last);
+        return $"{reading} {only}{line}.";
     }
+
+    // where a curve that moves at first has done nine tenths of it before two thirds of the range
+    private static int? Level(CurveResult result, int[] known, double sweep, double noise)
+    {
+        int last = known[^1];
+        double end = Value(result, last);
+        int from = Array.FindIndex(known, g => known.Where(k => Place(result, k) >= Place(result, g)).All(k => Math.Abs(Value(result, k) - end) < Math.Max(0.08 * sweep, noise)));
+        if (from <= 0)
+            return null;
+        double share = (Place(result, known[from]) - Place(result, known[0])) / (Place(result, last) - Place(result, known[0]));
+        return share < 0.67 ? known[from] : null;
+    }
+
+    private static CurveChange Between(CurveResult result, int a, int b)
+    {
+        var interval = result.Difference(a, b);
+        return new CurveChange(Place(result, a), Place(result, b), Value(result, b) - Value(result, a), UnseenParts.Finite(interval?.Low), UnseenParts.Finite(interval?.High));
+    }
+
+    private static int[] Known(CurveResult result) => [.. Enumerable.Range(0, result.Points.Count).Where(g => result.Points[g].Fitted is not null).OrderBy(g => result.Points[g].At[0])];
+
+    private static double Value(CurveResult result, int g) => result.Points[g].Fitted!.Value;
+
+    private static double Place(CurveResult result, int g) => result.Points[g].At[0];
 }

@@ -1,13 +1,10 @@
 using System.Text.Json.Serialization;
-using Gaugeyard.Analysis.Influences;
 using Gaugeyard.Analysis.Sampling;
 using Gaugeyard.Analysis.Wording;
 using Gaugeyard.Analysis.Work;
 using Gaugeyard.Records.Columns;
 using Gaugeyard.Records.RunSets;
 using Gaugeyard.Records.Units;
-using Gaugeyard.Statistics.Numerics;
-using Gaugeyard.Statistics.Smoothing;
 
 namespace Gaugeyard.Analysis.Curves;
 
@@ -35,6 +32,9 @@ public enum BandKind
 {
     [JsonStringEnumMemberName("formula")] Formula,
     [JsonStringEnumMemberName("bootstrap")] Bootstrap,
+
+    /// <summary>The curve alone, for a quick look.</summary>
+    [JsonStringEnumMemberName("none")] None,
 }
 
 [JsonConverter(typeof(JsonStringEnumConverter<ResampleBy>))]
@@ -81,6 +81,9 @@ public sealed record CurveQuestion : Question<CurveAnswer>
     /// <summary>How the stiffness is chosen when it is not stated.</summary>
     public ChooseBy? Choose { get; init; }
 
+    /// <summary>Whether scores are wanted although the stiffness is stated.</summary>
+    public bool WithScores { get; init; }
+
     /// <summary>Spans to choose from.</summary>
     public IReadOnlyList<double>? Spans { get; init; }
 
@@ -88,6 +91,9 @@ public sealed record CurveQuestion : Question<CurveAnswer>
     public IReadOnlyList<IReadOnlyList<double>>? At { get; init; }
 
     public BandChoice? Band { get; init; }
+
+    /// <summary>A category column whose levels get curves of their own beside the common one.</summary>
+    public string? By { get; init; }
 
     public override CurveAnswer Ask(RevisionContent content, WorkContext work)
     {
@@ -98,33 +104,44 @@ public sealed record CurveQuestion : Question<CurveAnswer>
         sample = sample.Complete([Reading, .. Against]);
         if (sample.Count < 3)
             throw new CannotAnswerException($"Only {Say.Count(sample.Count, "record")} {(sample.Count == 1 ? "has" : "have")} both {Reading} and {Say.List(Against)}; a curve needs at least 3.");
-        double[] y = sample.Number(Reading);
-        double[][] x = [.. Against.Select(sample.Number)];
-        var points = Points(x);
-        var data = new CurveData(sample, x, y);
-        var result = Way switch
-        {
-            CurveWay.LocalRegression => LocalCurves.Of(this, data, points, work),
-            CurveWay.SmoothingSpline => SplineCurves.Of(this, data, points, work),
-            _ => Interpolated(data, points),
-        };
+        var data = CurveData.Of(sample, this);
+        double[][] points = Points(data.X);
+        var result = Fit(data, points, work);
         var notes = new List<string>(result.Notes);
         if (Unit.IsEconomy(content.Find(Reading)!.Unit))
             notes.Add($"{Reading} is distance per fuel; the curve takes its own numbers. Consumption is the better scale.");
         if (Vehicles == VehicleUse.Ignore && content.FindRole(ColumnRole.Vehicle) is not null)
             notes.Add("Vehicles are ignored as asked: every record counts as independent.");
         notes.Add("A smoothed curve is flatter than the truth at its peaks and dips. It says nothing outside the tested range.");
-        return new CurveAnswer
+        int distinct = data.X[0].Distinct().Count();
+        var answer = new CurveAnswer
         {
-            Headline = CurveHeadline.Of(this, content.Find(Reading)!.Unit, content.Find(Against[0])!.Unit, data, result),
+            Headline = "",
             Basis = sample.Basis(),
             Points = result.Points,
             Smoothing = result.Smoothing,
             StraightLine = result.StraightLine,
+            Change = CurveHeadline.Change(result),
+            Categories = By is null ? null : CategoryCurves.Of(this, By, sample, work),
+            Tested = [.. Against.Select((c, j) => new TestedRange(c, data.Low[j], data.High[j]))],
+            DistinctValues = distinct,
+            NoShape = distinct < FewestValues && Against.Count == 1 ? $"{Against[0]} has only {Say.Count(distinct, "distinct value")}: too few to tell a shape. From {FewestValues} on a curve says something; until then compare the values as groups." : null,
             Notes = notes,
             Method = result.Method,
+            Records = new CurveRecords(data.X[0], data.Y, result.Fitted, [.. Enumerable.Range(0, sample.Count).Select(sample.RecordAt)]),
         };
+        return answer with { Headline = answer.NoShape ?? CurveHeadline.Of(this, content.Find(Reading)!.Unit, content.Find(Against[0])!.Unit, data, result) };
     }
+
+    /// <summary>Distinct values of the predictor from which on a shape can be told.</summary>
+    private const int FewestValues = 10;
+
+    internal CurveResult Fit(CurveData data, double[][] points, WorkContext work) => Way switch
+    {
+        CurveWay.LocalRegression => LocalCurves.Of(this, data, points, work),
+        CurveWay.SmoothingSpline => SplineCurves.Of(this, data, points, work),
+        _ => InterpolatedCurves.Of(this, data, points),
+    };
 
     private void Check()
     {
@@ -144,6 +161,12 @@ public sealed record CurveQuestion : Question<CurveAnswer>
             throw new QuestionException("Only local regression takes more than one predictor.");
         if (Band?.Times is < 50 or > 20_000)
             throw new QuestionException($"The number of resamples must lie between 50 and 20000 but is {Band.Times}.");
+        if (Confidence is not (> 0 and < 1))
+            throw new QuestionException($"The confidence must lie between 0 and 1, for example 0.95, but is {Confidence}.");
+        if (By is not null && (By == Reading || Against.Contains(By)))
+            throw new QuestionException($"{By} is already part of the curve and cannot divide it too.");
+        if (At?.Any(p => p.Any(v => !double.IsFinite(v))) == true)
+            throw new QuestionException("Every point must be a finite number.");
         if (At?.Any(p => p.Count != Against.Count) == true)
             throw new QuestionException($"Every point must have {Against.Count} value{(Against.Count == 1 ? "" : "s")}, one for each of {Say.List(Against)}.");
     }
@@ -151,7 +174,7 @@ public sealed record CurveQuestion : Question<CurveAnswer>
     /// <summary>Spans that are compared.</summary>
     internal IReadOnlyList<double> SpansTried => Spans is { Count: > 0 } ? Spans : UsualSpans;
 
-    private double[][] Points(double[][] x)
+    internal double[][] Points(double[][] x)
     {
         if (At is not null)
             return [.. At.Select(p => p.ToArray())];
@@ -165,101 +188,4 @@ public sealed record CurveQuestion : Question<CurveAnswer>
         double from = x[0].Min(), to = x[0].Max();
         return [.. Enumerable.Range(0, 50).Select(i => (double[])[from + (to - from) * i / 49, .. medians[1..]])];
     }
-
-    private CurveResult Interpolated(CurveData data, double[][] points)
-    {
-        if (Band is not null)
-            throw new QuestionException("A curve through every point has no band. Take local regression or a smoothing spline.");
-        var kind = Way switch { CurveWay.NaturalCubic => InterpolantKind.NaturalCubic, CurveWay.MonotoneCubic => InterpolantKind.MonotoneCubic, _ => InterpolantKind.Akima };
-        var (curve, reason) = Interpolants.Of(data.X[0], data.Y, kind);
-        if (curve is null)
-            throw new CannotAnswerException(Say.Sentence(reason!) + ".");
-        int ties = data.Y.Length - data.X[0].Distinct().Count();
-        return new CurveResult(
-            [.. points.Select(p => new CurvePoint(p, data.Inside(p) ? curve.Evaluate(p[0]) : null, null, null, null, null, null))],
-            new SmoothingFigures { Trace = data.Y.Length - ties, Scores = [] },
-            null,
-            ties > 0 ? [$"{Say.Count(ties, "record")} share their place with another and were averaged. A curve through every point follows the noise too."] : ["A curve through every point follows the noise too."],
-            [kind switch { InterpolantKind.NaturalCubic => "Natural cubic spline through the points.", InterpolantKind.MonotoneCubic => "Shape-preserving cubic through the points (Fritsch and Carlson 1980).", _ => "Akima's cubic through the points (1970)." }]);
-    }
 }
-
-/// <summary>A curve with what it rests on.</summary>
-public sealed record CurveAnswer : Answer
-{
-    public required IReadOnlyList<CurvePoint> Points { get; init; }
-
-    public required SmoothingFigures Smoothing { get; init; }
-
-    /// <summary>A straight line fitted to the same records (one predictor), for comparison.</summary>
-    public StraightLine? StraightLine { get; init; }
-}
-
-/// <summary>One point of a curve; everything but the place is null outside the tested range.</summary>
-public sealed record CurvePoint(IReadOnlyList<double> At, double? Fitted, double? Se, double? Low, double? High, double? SimultaneousLow, double? SimultaneousHigh);
-
-/// <summary>How stiff the curve is, and how that was chosen.</summary>
-public sealed record SmoothingFigures
-{
-    public double? Span { get; init; }
-
-    public double? Df { get; init; }
-
-    public double? Trace { get; init; }
-
-    /// <summary>Residual scale.</summary>
-    public double? S { get; init; }
-
-    public required IReadOnlyList<StiffnessScore> Scores { get; init; }
-
-    /// <summary>The stiffest choice within one standard error of the best.</summary>
-    public double? OneStandardError { get; init; }
-}
-
-public sealed record StiffnessScore(double? Span, double? Df, double? Score, double? Se);
-
-/// <summary>Intercept and slope of a straight line, and its error on the same folds as the curve's.</summary>
-public sealed record StraightLine(double Intercept, double Slope, double? Score, double? CurveScore);
-
-/// <summary>The records of a curve as arrays.</summary>
-internal sealed class CurveData(Sample sample, double[][] x, double[] y)
-{
-    public Sample Sample { get; } = sample;
-
-    public double[][] X { get; } = x;
-
-    public double[] Y { get; } = y;
-
-    /// <summary>Unit of resampling and folds: the vehicle, or the record where vehicles are not told apart.</summary>
-    public int[] Units { get; } = sample.VehicleOf ?? [.. Enumerable.Range(0, y.Length)];
-
-    public int UnitCount { get; } = sample.VehicleCount ?? y.Length;
-
-    /// <summary>Whether a point lies within the tested range of every predictor.</summary>
-    public bool Inside(double[] at)
-    {
-        for (int j = 0; j < X.Length; j++)
-            if (at[j] < X[j].Min() || at[j] > X[j].Max())
-                return false;
-        return true;
-    }
-
-    /// <summary>Mean over vehicles of each vehicle's mean squared error, with its standard error.</summary>
-    public (double Score, double Se) Score(double[] predicted)
-    {
-        var sums = new double[UnitCount];
-        var counts = new int[UnitCount];
-        for (int i = 0; i < Y.Length; i++)
-        {
-            if (double.IsNaN(predicted[i]))
-                continue;
-            sums[Units[i]] += (Y[i] - predicted[i]) * (Y[i] - predicted[i]);
-            counts[Units[i]]++;
-        }
-        double[] each = [.. Enumerable.Range(0, UnitCount).Where(u => counts[u] > 0).Select(u => sums[u] / counts[u])];
-        var m = Statistics.Describing.Moments.Of(each);
-        return (each.Length == 0 ? double.NaN : m.Mean, m.StandardDeviation / Math.Sqrt(each.Length));
-    }
-}
-
-internal sealed record CurveResult(IReadOnlyList<CurvePoint> Points, SmoothingFigures Smoothing, StraightLine? StraightLine, IReadOnlyList<string> Notes, IReadOnlyList<string> Method);

@@ -1,55 +1,53 @@
 using Gaugeyard.Statistics.Describing;
 using Gaugeyard.Statistics.Numerics;
-using MathNet.Numerics.LinearAlgebra;
 
 namespace Gaugeyard.Statistics.Smoothing;
-
-/// <summary>Settings of a local regression.</summary>
-public sealed record LocalRegressionOptions
-{
-    /// <summary>Degree of the local polynomial: 0, 1 or 2.</summary>
-    public int Degree { get; init; } = 2;
-
-    /// <summary>Share of the records in each neighbourhood, above 0; above 1 stretches the bandwidth by span^(1/p).</summary>
-    public double Span { get; init; } = 0.75;
-
-    /// <summary>Whether records far off are weighed down: one fit and three re-weighted ones with bisquare weights at 6 times the median absolute residual.</summary>
-    public bool Robust { get; init; }
-}
 
 /// <summary>
 /// Local regression, fitted directly at every point (Cleveland 1979, JASA 74:829-836; Cleveland and Devlin 1988, JASA 83:596-610):
 /// tricube weights over the q = floor(n span + 1e-5) nearest records. With two or more predictors each is divided by its 10 %
-/// trimmed standard deviation. Immutable after construction; safe to evaluate from any thread.
+/// trimmed standard deviation. O(q) per point with one predictor, O(n + q terms^2) with more. Immutable after construction; safe
+/// to evaluate from any thread.
 /// </summary>
 public sealed class LocalRegression
 {
+    /// <summary>
+    /// Beyond this many records the figures over all records (not the curve itself) rest on fits at 400 of them, spread evenly
+    /// by rank, with straight lines between.
+    /// </summary>
+    public const int Thinned = 40_000;
+
+    private const int Places = 400;
     private readonly double[][] _x;
     private readonly double[] _y;
     private readonly double[]? _prior;
     private readonly double[] _scales;
-    private readonly int[]? _order;
+    private readonly int[] _order = [];
+    private SortedLine? _line;
     private double[]? _robust;
 
     private LocalRegression(double[][] predictors, double[] y, double[]? weights, LocalRegressionOptions options)
     {
         (_y, _prior, Options) = (y, weights, options);
         _scales = [.. predictors.Select(p => predictors.Length == 1 ? 1 : TrimmedScale(p))];
-        _x = [.. predictors.Select((p, j) => p.Select(v => v / _scales[j]).ToArray())];
-        Neighbours = Math.Min(Count, (int)Math.Floor(Count * options.Span + 1e-5));
+        Neighbours = NeighboursOf(Count, options.Span);
         if (predictors.Length == 1)
         {
+            _x = predictors;
             _order = [.. Enumerable.Range(0, Count)];
-            double[] keys = (double[])_x[0].Clone();
-            Array.Sort(keys, _order);
-            Sorted = keys;
+            Array.Sort((double[])predictors[0].Clone(), _order);
+            _line = Line(_y, _prior);
+        }
+        else
+        {
+            _x = [.. predictors.Select((p, j) => p.Select(v => v / _scales[j]).ToArray())];
         }
     }
 
-    private double[] Sorted { get; } = [];
-
+    /// <summary>Settings of the fit.</summary>
     public LocalRegressionOptions Options { get; }
 
+    /// <summary>Number of records.</summary>
     public int Count => _y.Length;
 
     /// <summary>Records in each neighbourhood.</summary>
@@ -59,7 +57,7 @@ public sealed class LocalRegression
     public int Terms => TermCount(_x.Length, Options.Degree);
 
     /// <summary>Number of coefficients of a polynomial.</summary>
-    public static int TermCount(int predictors, int degree) => degree switch { 0 => 1, 1 => 1 + predictors, _ => (predictors + 1) * (predictors + 2) / 2 };
+    public static int TermCount(int predictors, int degree) => LocalSolve.TermCount(predictors, degree);
 
     /// <summary>Weight of each record after the robust passes; null without them.</summary>
     public IReadOnlyList<double>? RobustWeights => _robust;
@@ -69,17 +67,22 @@ public sealed class LocalRegression
     /// <param name="y">n finite values.</param>
     /// <param name="weights">n positive weights, or null.</param>
     /// <returns>The fit, or the reason why the data cannot carry it.</returns>
+    /// <exception cref="ArgumentException">Lengths differ, a value is not finite, a weight is not positive, or an option is out of range.</exception>
     public static (LocalRegression? Fit, string? Reason) Of(double[][] predictors, double[] y, LocalRegressionOptions options, double[]? weights = null, CancellationToken cancel = default)
     {
         if (predictors.Length is < 1 or > 4)
             throw new ArgumentException($"local regression takes 1 to 4 predictors but got {predictors.Length}", nameof(predictors));
-        if (options.Degree is < 0 or > 2 || !(options.Span > 0))
+        if (options.Degree is < 0 or > 2 || !(options.Span > 0) || double.IsInfinity(options.Span))
             throw new ArgumentException($"degree must be 0, 1 or 2 and span above 0 but are {options.Degree} and {options.Span}", nameof(options));
         foreach (double[] p in predictors)
             if (p.Length != y.Length)
                 throw new ArgumentException($"predictors must have length {y.Length} but one has {p.Length}", nameof(predictors));
         if (weights is not null && weights.Length != y.Length)
             throw new ArgumentException($"weights must have length {y.Length} but has {weights.Length}", nameof(weights));
+        if (weights?.Any(w => !(w > 0) || double.IsInfinity(w)) == true)
+            throw new ArgumentException("weights must be positive and finite", nameof(weights));
+        if (predictors.Append(y).Any(c => c.Any(v => !double.IsFinite(v))))
+            throw new ArgumentException("predictors and readings must be finite", nameof(predictors));
         if (y.Length == 0)
             return (null, "there are no records");
         foreach (double[] p in predictors)
@@ -95,33 +98,79 @@ public sealed class LocalRegression
         return (fit, null);
     }
 
+    /// <summary>Records in each neighbourhood of n.</summary>
+    internal static int NeighboursOf(long n, double span) => (int)Math.Min(n, Math.Floor(n * span + 1e-5));
+
     private void Reweigh(CancellationToken cancel)
     {
         for (int pass = 0; pass < 3; pass++)
         {
-            double[] fitted = FittedValues(cancel);
-            double[] size = [.. fitted.Select((f, i) => Math.Abs(_y[i] - f) * Math.Sqrt(_prior?[i] ?? 1))];
+            double[] size = Sizes(FittedValues(cancel));
             double cut = 6 * Quantiles.Median(size);
             if (!(cut > 1e-300))
                 return;
             _robust = [.. size.Select(r => r <= 0.001 * cut ? 1 : r > 0.999 * cut ? 0 : Math.Pow(1 - r / cut * (r / cut), 2))];
+            if (_x.Length == 1)
+                _line = Line(_y, _prior is null ? _robust : [.. _robust.Select((r, i) => r * _prior[i])]);
         }
     }
+
+    private double[] Sizes(double[] fitted) => [.. fitted.Select((f, i) => Math.Abs(_y[i] - f) * Math.Sqrt(_prior?[i] ?? 1))];
+
+    private SortedLine Line(double[] y, double[]? weights) =>
+        new([.. _order.Select(i => _x[0][i])], [.. _order.Select(i => y[i])], weights is null ? null : [.. _order.Select(i => weights[i])], Options.Degree);
+
+    private LineFit FitLine(SortedLine line, double at, int exclude = -1) =>
+        line.Fit(at, Stretch(line.Bandwidth(at, exclude < 0 ? Neighbours : NeighboursOf(Count - 1, Options.Span), exclude)), exclude);
+
+    private double Stretch(double h) => Options.Span > 1 ? h * Math.Pow(Options.Span, 1.0 / _x.Length) : h;
 
     /// <summary>Fitted value at every record; NaN where its neighbourhood cannot carry the polynomial.</summary>
     public double[] FittedValues(CancellationToken cancel = default)
     {
         var fitted = new double[Count];
-        Parallel.For(0, Count, Threads(cancel), i => fitted[i] = Evaluate(At(i)));
+        if (_line is not null)
+        {
+            double[] values = [.. AlongLine(_line, cancel).Select(f => f.Value)];
+            for (int k = 0; k < Count; k++)
+                fitted[_order[k]] = values[k];
+            return fitted;
+        }
+        Parallel.For(0, Count, Threads(cancel), i => fitted[i] = Scaled(At(i)));
         return fitted;
     }
 
-    /// <summary>Value at each record from a fit without that record: the neighbourhood moves, q = floor((n - 1) span + 1e-5).</summary>
+    // fits at every record, sorted; beyond the limit at evenly spread places with the value and own weight drawn between
+    private LineFit[] AlongLine(SortedLine line, CancellationToken cancel)
+    {
+        var fits = new LineFit[Count];
+        if (Count <= Thinned)
+        {
+            Parallel.For(0, Count, Threads(cancel), k => fits[k] = FitLine(line, line.X[k]));
+            return fits;
+        }
+        int[] places = [.. Enumerable.Range(0, Places).Select(j => (int)((long)j * (Count - 1) / (Places - 1)))];
+        var knots = new LineFit[Places];
+        Parallel.For(0, Places, Threads(cancel), j =>
+        {
+            var fit = FitLine(line, line.X[places[j]]);
+            knots[j] = fit.Weights is { } w ? fit with { A0 = w[places[j] - fit.First], Weights = null } : fit;
+        });
+        for (int j = 0; j + 1 < Places; j++)
+            for (int k = places[j]; k <= places[j + 1]; k++)
+            {
+                double gap = line.X[places[j + 1]] - line.X[places[j]], t = gap > 0 ? (line.X[k] - line.X[places[j]]) / gap : 0;
+                fits[k] = knots[j] with { Value = knots[j].Value + t * (knots[j + 1].Value - knots[j].Value), A0 = knots[j].A0 + t * (knots[j + 1].A0 - knots[j].A0) };
+            }
+        return fits;
+    }
+
+    /// <summary>Value at each record from a fit without that record: the neighbourhood moves, q = floor((n - 1) span + 1e-5). Robust weights stay.</summary>
     public double[] LeaveOneOut(CancellationToken cancel = default)
     {
         var values = new double[Count];
-        if (_x.Length == 1)
-            Parallel.For(0, Count, Threads(cancel), i => values[i] = Evaluate(At(i), exclude: i));
+        if (_line is { } line)
+            Parallel.For(0, Count, Threads(cancel), k => values[_order[k]] = FitLine(line, line.X[k], exclude: k).Value);
         else
             Parallel.For(0, Count, Threads(cancel), i => values[i] = Without(i));
         return values;
@@ -134,145 +183,97 @@ public sealed class LocalRegression
         double[][] raw = [.. _x.Select((c, j) => rest.Select(k => c[k] * _scales[j]).ToArray())];
         var fit = new LocalRegression(raw, [.. rest.Select(k => _y[k])], _prior is null ? null : [.. rest.Select(k => _prior[k])], Options) { _robust = _robust is null ? null : [.. rest.Select(k => _robust[k])] };
         double[] at = [.. _x.Select((c, j) => c[i] * _scales[j])];
-        return fit.Neighbours < fit.Terms ? double.NaN : fit.Evaluate((ReadOnlySpan<double>)at);
+        return fit.Neighbours < fit.Terms ? double.NaN : fit.Evaluate(at);
     }
 
     /// <summary>Value at a point in the predictors' own units; NaN where the neighbourhood cannot carry the polynomial.</summary>
     public double Evaluate(ReadOnlySpan<double> at)
     {
-        Span<double> scaled = stackalloc double[at.Length];
-        for (int j = 0; j < at.Length; j++)
-            scaled[j] = at[j] / _scales[j];
-        return Evaluate(scaled.ToArray());
+        CheckPoint(at);
+        return _line is not null ? FitLine(_line, at[0]).Value : Scaled(InScale(at));
     }
 
     /// <summary>Row of the operator: value at the point = row . y. Null where the neighbourhood cannot carry the polynomial.</summary>
     public double[]? OperatorRow(ReadOnlySpan<double> at)
     {
+        CheckPoint(at);
+        var row = new double[Count];
+        if (_line is null)
+            return Row(InScale(at), useRobust: true);
+        var fit = FitLine(_line, at[0]);
+        if (!fit.Exists)
+            return null;
+        var part = new double[fit.Last - fit.First];
+        _line.Row(at[0], fit, part);
+        for (int k = 0; k < part.Length; k++)
+            row[_order[fit.First + k]] = part[k];
+        return row;
+    }
+
+    /// <summary>Standard error of the value at a point as a multiple of the residual scale; NaN where there is no value.</summary>
+    public double ErrorFactor(ReadOnlySpan<double> at)
+    {
+        if (OperatorRow(at) is not { } row)
+            return double.NaN;
+        double sum = 0;
+        for (int i = 0; i < row.Length; i++)
+            if (row[i] != 0)
+                sum += row[i] * row[i] / (_prior?[i] ?? 1);
+        return Math.Sqrt(sum);
+    }
+
+    private void CheckPoint(ReadOnlySpan<double> at)
+    {
+        if (at.Length != _x.Length)
+            throw new ArgumentException($"a point must have {_x.Length} coordinates but has {at.Length}", nameof(at));
+    }
+
+    private double[] InScale(ReadOnlySpan<double> at)
+    {
         var scaled = new double[at.Length];
         for (int j = 0; j < at.Length; j++)
             scaled[j] = at[j] / _scales[j];
-        return Row(scaled, useRobust: true);
+        return scaled;
     }
 
     private double[] At(int i) => [.. _x.Select(c => c[i])];
 
-    private double Evaluate(double[] at, int exclude = -1)
+    private double Scaled(double[] at)
     {
-        if (_x.Length == 1)
-            return Line(at[0], exclude);
-        var (rows, weights) = Neighbourhood(at, exclude, useRobust: true);
-        return Solve(at, rows, weights) is { } l ? rows.Select((i, k) => l[k] * _y[i]).Sum() : double.NaN;
-    }
-
-    // one predictor: power sums of the scaled distance within the window, then a small symmetric system
-    private double Line(double at, int exclude)
-    {
-        var (first, last, h) = Window(at, exclude);
-        if (!(h > 0))
+        var (rows, offsets, weights) = Neighbourhood(at, useRobust: true);
+        if (LocalSolve.Row(offsets, weights, Options.Degree) is not { } l)
             return double.NaN;
-        double s0 = 0, s1 = 0, s2 = 0, s3 = 0, s4 = 0, t0 = 0, t1 = 0, t2 = 0;
-        for (int k = first; k <= last; k++)
-        {
-            int i = _order![k];
-            if (i == exclude)
-                continue;
-            double z = (Sorted[k] - at) / h, d = Math.Abs(z);
-            if (d >= 1)
-                continue;
-            double cube = 1 - d * d * d, w = cube * cube * cube;
-            if (_prior is not null)
-                w *= _prior[i];
-            if (_robust is not null)
-                w *= _robust[i];
-            double wz = w * z, wz2 = wz * z, y = _y[i];
-            s0 += w;
-            t0 += w * y;
-            if (Options.Degree == 0)
-                continue;
-            s1 += wz;
-            s2 += wz2;
-            t1 += wz * y;
-            if (Options.Degree == 1)
-                continue;
-            s3 += wz2 * z;
-            s4 += wz2 * z * z;
-            t2 += wz2 * y;
-        }
-        if (!(s0 > 0))
-            return double.NaN;
-        double ybar = t0 / s0;
-        if (Options.Degree == 0)
-            return ybar;
-        // about the weighted mean of z and y, which keeps the digits at the ends of the range
-        double m = s1 / s0, a11 = s2 - s1 * m, b1 = t1 - s1 * ybar;
-        if (Options.Degree == 1)
-            return a11 > 1e-10 * s2 ? ybar - b1 / a11 * m : Fallback(at, exclude);
-        double m2 = s2 / s0, a12 = s3 - s1 * m2, a22 = s4 - s2 * m2, b2 = t2 - s2 * ybar;
-        if (!(a11 > 1e-10 * s2))
-            return Fallback(at, exclude);
-        double rest = a22 - a12 * a12 / a11;
-        if (!(rest > 1e-8 * s4))
-            return Fallback(at, exclude);
-        double c2 = (b2 - a12 / a11 * b1) / rest, c1 = (b1 - a12 * c2) / a11;
-        return ybar - c1 * m - c2 * m2;
+        double sum = 0;
+        for (int k = 0; k < l.Length; k++)
+            sum += l[k] * _y[rows[k]];
+        return sum;
     }
 
-    private double Fallback(double at, int exclude)
+    private double[]? Row(double[] at, bool useRobust)
     {
-        var (rows, weights) = Neighbourhood([at], exclude, useRobust: true);
-        return Solve([at], rows, weights) is { } l ? rows.Select((i, k) => l[k] * _y[i]).Sum() : double.NaN;
+        var (rows, offsets, weights) = Neighbourhood(at, useRobust);
+        if (LocalSolve.Row(offsets, weights, Options.Degree) is not { } l)
+            return null;
+        var row = new double[Count];
+        for (int k = 0; k < rows.Length; k++)
+            row[rows[k]] = l[k];
+        return row;
     }
 
-    // the sorted positions that hold the q nearest records, and the bandwidth
-    private (int First, int Last, double H) Window(double at, int exclude)
-    {
-        int q = exclude < 0 ? Neighbours : Math.Min(Count - 1, (int)Math.Floor((Count - 1) * Options.Span + 1e-5));
-        int right = Array.BinarySearch(Sorted, at);
-        if (right < 0)
-            right = ~right;
-        // first position of equal values
-        while (right > 0 && Sorted[right - 1] == at)
-            right--;
-        int left = right - 1, taken = 0;
-        double h = 0;
-        while (taken < q)
-        {
-            bool goRight = left < 0 || (right < Count && Sorted[right] - at <= at - Sorted[left]);
-            int k = goRight ? right++ : left--;
-            if (k < 0 || k >= Count)
-                break;
-            if (_order![k] == exclude)
-                continue;
-            h = Math.Max(h, Math.Abs(Sorted[k] - at));
-            taken++;
-        }
-        return (left + 1, right - 1, Stretch(h));
-    }
-
-    private double Stretch(double h) => Options.Span > 1 ? h * Math.Pow(Options.Span, 1.0 / _x.Length) : h;
-
-    private (int[] Rows, double[] Weights) Neighbourhood(double[] at, int exclude, bool useRobust)
+    private (int[] Rows, double[][] Offsets, double[] Weights) Neighbourhood(double[] at, bool useRobust)
     {
         var distance = new double[Count];
-        for (int i = 0; i < Count; i++)
-        {
-            double sum = 0;
-            for (int j = 0; j < _x.Length; j++)
-                sum += (_x[j][i] - at[j]) * (_x[j][i] - at[j]);
-            distance[i] = i == exclude ? double.PositiveInfinity : Math.Sqrt(sum);
-        }
-        int q = exclude < 0 ? Neighbours : Math.Min(Count - 1, (int)Math.Floor((Count - 1) * Options.Span + 1e-5));
-        double[] sorted = (double[])distance.Clone();
-        Array.Sort(sorted);
-        double h = q > 0 ? Stretch(sorted[q - 1]) : 0;
+        for (int j = 0; j < _x.Length; j++)
+            for (int i = 0; i < Count; i++)
+                distance[i] += (_x[j][i] - at[j]) * (_x[j][i] - at[j]);
+        double h = Stretch(Math.Sqrt(Outliers.Selection.Smallest((double[])distance.Clone(), Neighbours - 1)));
         if (!(h > 0))
-            return ([], []);
-        var rows = new List<int>();
-        var weights = new List<double>();
+            return ([], [], []);
+        var rows = new List<int>(Neighbours);
+        var weights = new List<double>(Neighbours);
         for (int i = 0; i < Count; i++)
         {
-            double d = distance[i] / h;
+            double d = Math.Sqrt(distance[i]) / h;
             if (d >= 1)
                 continue;
             double cube = 1 - d * d * d, w = cube * cube * cube * (_prior?[i] ?? 1) * (useRobust && _robust is not null ? _robust[i] : 1);
@@ -282,164 +283,96 @@ public sealed class LocalRegression
                 weights.Add(w);
             }
         }
-        return ([.. rows], [.. weights]);
-    }
-
-    private double[]? Row(double[] at, bool useRobust)
-    {
-        var (rows, weights) = Neighbourhood(at, -1, useRobust);
-        if (Solve(at, rows, weights) is not { } l)
-            return null;
-        var row = new double[Count];
-        for (int k = 0; k < rows.Length; k++)
-            row[rows[k]] = l[k];
-        return row;
-    }
-
-    // weights of the y's in the value at the point: first row of the weighted least-squares operator
-    private double[]? Solve(double[] at, int[] rows, double[] weights)
-    {
-        int m = rows.Length, c = Terms;
-        if (m == 0)
-            return null;
-        var columns = new double[c][];
-        double[] root = [.. weights.Select(Math.Sqrt)];
-        columns[0] = (double[])root.Clone();
-        if (Options.Degree > 0)
-        {
-            int next = 1 + _x.Length;
-            for (int j = 0; j < _x.Length; j++)
-            {
-                columns[j + 1] = [.. rows.Select((i, k) => root[k] * (_x[j][i] - at[j]))];
-                for (int g = 0; g <= j && Options.Degree == 2; g++)
-                    columns[next++] = [.. rows.Select((i, k) => root[k] * (_x[j][i] - at[j]) * (_x[g][i] - at[g]))];
-            }
-        }
-        double[] norms = [.. columns.Select(x => Regression.HouseholderQr.Norm(x))];
-        for (int j = 0; j < c; j++)
-            for (int k = 0; k < m && norms[j] > 0; k++)
-                columns[j][k] /= norms[j];
-        double[] l;
-        if (m >= c && norms.All(v => v > 0))
-        {
-            var qr = new Regression.HouseholderQr([.. columns.Select(x => (double[])x.Clone())], 1e-7);
-            if (qr.Rank == c)
-            {
-                var unit = new double[c];
-                unit[0] = 1 / norms[0];
-                l = new double[m];
-                qr.SolveTransposed(unit).CopyTo(l, 0);
-                qr.Apply(l);
-                return [.. l.Select((v, k) => v * root[k])];
-            }
-        }
-        // too few distinct points for the polynomial: minimum-norm solution, singular values below 1e-7 of the largest left out
-        var svd = Matrix<double>.Build.DenseOfColumnArrays(columns).Svd();
-        double largest = svd.S[0];
-        if (!(largest > 0))
-            return null;
-        l = new double[m];
-        for (int s = 0; s < svd.S.Count; s++)
-        {
-            if (svd.S[s] <= 1e-7 * largest)
-                continue;
-            double factor = svd.VT[s, 0] / svd.S[s];
-            for (int k = 0; k < m; k++)
-                l[k] += factor * svd.U[k, s];
-        }
-        return [.. l.Select((v, k) => norms[0] > 0 ? v / norms[0] * root[k] : 0)];
+        return ([.. rows], [.. _x.Select((c, j) => rows.Select(i => c[i] - at[j]).ToArray())], [.. weights]);
     }
 
     /// <summary>
     /// Trace of the operator, residual sum of squares, its two moments, residual scale and degrees of freedom. For a robust fit
     /// trace and moments are those of the unweighted fit, and the scale comes from pseudovalues (Cleveland and Grosse 1991).
     /// </summary>
-    public LocalStatistics Statistics(bool moments = true, ulong seed = 1, CancellationToken cancel = default)
+    /// <param name="moments">Whether scale and degrees of freedom are wanted; they cost O(n^2 q) to n = 1,500 and O(n q) beyond.</param>
+    public LocalStatistics Statistics(bool moments = true, ulong seed = 1, CancellationToken cancel = default) =>
+        _line is null ? StatisticsOfMany(moments, seed, cancel) : StatisticsOfLine(moments, seed, cancel);
+
+    private LocalStatistics StatisticsOfLine(bool moments, ulong seed, CancellationToken cancel)
+    {
+        var plain = _robust is null ? _line! : Line(_y, _prior);
+        var fits = AlongLine(plain, cancel);
+        double[] hat = new double[Count], own = new double[Count];
+        for (int k = 0; k < Count; k++)
+        {
+            int i = _order[k];
+            own[i] = fits[k].Value;
+            hat[i] = !fits[k].Exists ? double.NaN : fits[k].Weights is { } w ? w[k - fits[k].First] : (_prior?[i] ?? 1) * fits[k].A0;
+        }
+        double[] fitted = _robust is null ? own : FittedValues(cancel);
+        double trace = Sums.Of(hat), rss = Squares(_y, fitted);
+        if (!moments || double.IsNaN(trace))
+            return new LocalStatistics(fitted, hat, trace, rss, double.NaN, double.NaN, double.NaN);
+        double delta1, delta2;
+        if (Count <= Thinned)
+        {
+            var l = new LocalOperator(Count, k => (fits[k].First, fits[k].Last), (k, row) => plain.Row(plain.X[k], fits[k], row));
+            delta1 = Count - 2 * trace + Sums.Of(l.Norms(null, cancel));
+            delta2 = l.SecondMoment(seed, cancel);
+        }
+        else
+        {
+            // the squared norm of a row is close to its own weight here, and n is far beyond either
+            delta1 = delta2 = Count - trace;
+        }
+        if (_robust is null)
+            return new LocalStatistics(fitted, hat, trace, rss, delta1, delta2, Math.Sqrt(rss / delta1));
+        double[] pseudo = Pseudovalues(fitted), again = new double[Count];
+        var refit = AlongLine(Line(pseudo, _prior), cancel);
+        for (int k = 0; k < Count; k++)
+            again[_order[k]] = refit[k].Value;
+        return new LocalStatistics(fitted, hat, trace, rss, delta1, delta2, Math.Sqrt(Squares(pseudo, again) / delta1));
+    }
+
+    private LocalStatistics StatisticsOfMany(bool moments, ulong seed, CancellationToken cancel)
     {
         var hat = new double[Count];
-        var fitted = new double[Count];
-        var norms = new double[Count];
-        var rows = moments ? new double[Count][] : null;
+        var own = new double[Count];
+        var rows = new double[Count][];
+        bool keep = moments && Count <= 6000;
         Parallel.For(0, Count, Threads(cancel), i =>
         {
             double[]? row = Row(At(i), useRobust: false);
-            if (row is null)
-            {
-                hat[i] = double.NaN;
-                fitted[i] = double.NaN;
-                return;
-            }
-            hat[i] = row[i];
-            fitted[i] = Dot(row, _y);
-            if (!moments)
-                return;
-            norms[i] = Dot(row, row);
-            rows![i] = row;
+            hat[i] = row?[i] ?? double.NaN;
+            own[i] = row is null ? double.NaN : Dot(row, _y);
+            rows[i] = keep && row is not null ? row : [];
         });
-        double[] robustFit = _robust is null ? fitted : FittedValues(cancel);
-        double rss = 0;
-        for (int i = 0; i < Count; i++)
-            rss += (_prior?[i] ?? 1) * Math.Pow(_y[i] - robustFit[i], 2);
-        double trace = Sums.Of(hat);
-        if (!moments)
-            return new LocalStatistics(robustFit, hat, trace, rss, double.NaN, double.NaN, double.NaN);
-        double delta1 = Count - 2 * trace + Sums.Of(norms), delta2 = Delta2(rows!, seed, cancel);
-        double scaleSquares = rss;
+        double[] fitted = _robust is null ? own : FittedValues(cancel);
+        double trace = Sums.Of(hat), rss = Squares(_y, fitted);
+        if (!keep || double.IsNaN(trace))
+            return new LocalStatistics(fitted, hat, trace, rss, double.NaN, double.NaN, double.NaN);
+        var l = new LocalOperator(Count, _ => (0, Count), (i, row) => rows[i].CopyTo(row));
+        double delta1 = Count - 2 * trace + Sums.Of(l.Norms(null, cancel)), delta2 = l.SecondMoment(seed, cancel), squares = rss;
         if (_robust is not null)
         {
-            double[] pseudo = Pseudovalues(robustFit);
-            scaleSquares = 0;
-            for (int i = 0; i < Count; i++)
-                scaleSquares += (_prior?[i] ?? 1) * Math.Pow(pseudo[i] - Dot(rows![i], pseudo), 2);
+            double[] pseudo = Pseudovalues(fitted);
+            squares = Squares(pseudo, [.. rows.Select(r => Dot(r, pseudo))]);
         }
-        return new LocalStatistics(robustFit, hat, trace, rss, delta1, delta2, Math.Sqrt(scaleSquares / delta1));
+        return new LocalStatistics(fitted, hat, trace, rss, delta1, delta2, Math.Sqrt(squares / delta1));
+    }
+
+    private double Squares(double[] y, double[] fitted)
+    {
+        double sum = 0;
+        for (int i = 0; i < Count; i++)
+            sum += (_prior?[i] ?? 1) * (y[i] - fitted[i]) * (y[i] - fitted[i]);
+        return sum;
     }
 
     private double[] Pseudovalues(double[] fitted)
     {
-        double[] size = [.. fitted.Select((f, i) => Math.Abs(_y[i] - f) * Math.Sqrt(_prior?[i] ?? 1))];
+        double[] size = Sizes(fitted);
         double c = Math.Pow(6 * Quantiles.Median(size), 2) / 5, sum = 0;
         for (int i = 0; i < Count; i++)
             sum += (1 - size[i] * size[i] / c) * Math.Sqrt(_robust![i]);
         double factor = Count / sum;
         return [.. fitted.Select((f, i) => f + factor * _robust![i] * (_y[i] - f))];
-    }
-
-    // n - 2 tr A + |A|^2 with A = L + L' - L'L; by random signs where the full product would be too large
-    private double Delta2(double[][] rows, ulong seed, CancellationToken cancel)
-    {
-        if (rows.Any(r => r is null))
-            return double.NaN;
-        if (Count <= 1000)
-        {
-            var l = Matrix<double>.Build.DenseOfRowArrays(rows);
-            var a = l + l.Transpose() - l.TransposeThisAndMultiply(l);
-            return Count - 2 * a.Trace() + a.PointwisePower(2).RowSums().Sum();
-        }
-        const int Vectors = 20;
-        double sum = 0;
-        for (int v = 0; v < Vectors; v++)
-        {
-            cancel.ThrowIfCancellationRequested();
-            var random = new RandomStream(seed, 0xD2, (ulong)v);
-            var z = new double[Count];
-            for (int i = 0; i < Count; i++)
-                z[i] = (random.NextWord() & 1) == 0 ? -1 : 1;
-            // (I - L)'(I - L) z
-            double[] r = Rest(z), back = new double[Count];
-            for (int i = 0; i < Count; i++)
-            {
-                back[i] += r[i];
-                double ri = r[i];
-                double[] row = rows[i];
-                for (int j = 0; j < Count; j++)
-                    back[j] -= row[j] * ri;
-            }
-            sum += Dot(back, back);
-        }
-        return sum / Vectors;
-
-        double[] Rest(double[] z) => [.. rows.Select((row, i) => z[i] - Dot(row, z))];
     }
 
     private static double Dot(double[] a, double[] b) => System.Numerics.Tensors.TensorPrimitives.Dot<double>(a, b);
@@ -452,21 +385,4 @@ public sealed class LocalRegression
     }
 
     private static ParallelOptions Threads(CancellationToken cancel) => new() { CancellationToken = cancel, MaxDegreeOfParallelism = Environment.ProcessorCount };
-}
-
-/// <summary>Figures of a local regression over its own records.</summary>
-/// <param name="Hat">Diagonal of the operator.</param>
-/// <param name="Delta1">First moment of the residual operator; NaN when not asked for.</param>
-/// <param name="Delta2">Second moment.</param>
-/// <param name="S">Residual scale.</param>
-public sealed record LocalStatistics(double[] Fitted, double[] Hat, double Trace, double Rss, double Delta1, double Delta2, double S)
-{
-    /// <summary>Degrees of freedom of pointwise t intervals.</summary>
-    public double Df => Delta1 * Delta1 / Delta2;
-
-    /// <summary>n RSS / (n - trace)^2 (Craven and Wahba 1979).</summary>
-    public double Gcv => Fitted.Length * Rss / Math.Pow(Fitted.Length - Trace, 2);
-
-    /// <summary>ln(RSS / n) + 1 + 2 (trace + 1) / (n - trace - 2) (Hurvich, Simonoff and Tsai 1998, JRSS B 60:271-293).</summary>
-    public double Aicc => Fitted.Length - Trace - 2 > 0 ? Math.Log(Rss / Fitted.Length) + 1 + 2 * (Trace + 1) / (Fitted.Length - Trace - 2) : double.NaN;
 }

@@ -2,6 +2,22 @@ using Gaugeyard.Statistics.Numerics;
 
 namespace Gaugeyard.Statistics.Smoothing;
 
+/// <summary>How the stiffness of a smoothing spline is chosen.</summary>
+public enum SplineCriterion
+{
+    /// <summary>Generalised cross-validation (Craven and Wahba 1979).</summary>
+    Gcv,
+
+    /// <summary>Restricted maximum likelihood (Wahba 1985).</summary>
+    Reml,
+
+    /// <summary>Leave-one-out by the hat diagonal, exact for fixed stiffness.</summary>
+    LeaveOneOut,
+
+    /// <summary>Corrected Akaike criterion (Hurvich, Simonoff and Tsai 1998).</summary>
+    Aicc,
+}
+
 /// <summary>
 /// Cubic smoothing spline with a knot at every distinct x: minimises sum w (y - g)^2 + lambda x integral of g''^2. Computed in
 /// O(n) as the posterior mean of an integrated random walk by two information filters (Wahba 1978, JRSS B 40:364-372; Wecker and
@@ -9,32 +25,44 @@ namespace Gaugeyard.Statistics.Smoothing;
 /// </summary>
 public sealed class SmoothingSpline
 {
-    private readonly double[] _x, _w, _ybar;
+    private readonly double[] _x, _w, _ybar, _y;
+    private readonly double[]? _weights;
+    private readonly int[] _place;
     private readonly double _origin, _range, _within;
 
-    private SmoothingSpline(double[] x, double[] w, double[] ybar, double origin, double range, double within, int count)
+    private SmoothingSpline(double[] x, double[] w, double[] ybar, double origin, double range, double within, double[] y, double[]? weights, int[] place)
     {
-        (_x, _w, _ybar, _origin, _range, _within, Count) = (x, w, ybar, origin, range, within, count);
+        (_x, _w, _ybar, _origin, _range, _within) = (x, w, ybar, origin, range, within);
+        (_y, _weights, _place) = (y, weights, place);
     }
 
     /// <summary>Number of records.</summary>
-    public int Count { get; }
+    public int Count => _y.Length;
 
     /// <summary>Number of distinct x.</summary>
     public int Distinct => _x.Length;
 
     /// <summary>Sets up the problem; ties in x are merged.</summary>
+    /// <param name="x">n finite values.</param>
+    /// <param name="y">n finite values.</param>
+    /// <param name="weights">n positive weights, or null.</param>
     /// <returns>The problem, or the reason why there is none.</returns>
+    /// <exception cref="ArgumentException">Lengths differ, or a value is not finite.</exception>
     public static (SmoothingSpline? Problem, string? Reason) Of(double[] x, double[] y, double[]? weights = null)
     {
         if (x.Length != y.Length)
             throw new ArgumentException($"y must have length {x.Length} but has {y.Length}", nameof(y));
+        if (weights is not null && weights.Length != x.Length)
+            throw new ArgumentException($"weights must have length {x.Length} but has {weights.Length}", nameof(weights));
+        if (x.Concat(y).Any(v => !double.IsFinite(v)) || weights?.Any(w => !(w > 0)) == true)
+            throw new ArgumentException("x and y must be finite and weights positive", nameof(x));
         double[] keys = (double[])x.Clone();
         int[] order = [.. Enumerable.Range(0, x.Length)];
         Array.Sort(keys, order);
         var xs = new List<double>();
         var ws = new List<double>();
         var ys = new List<double>();
+        var place = new int[x.Length];
         double within = 0;
         for (int i = 0, j; i < keys.Length; i = j)
         {
@@ -47,7 +75,10 @@ public sealed class SmoothingSpline
             }
             double mean = sum / w;
             for (int k = i; k < j; k++)
+            {
                 within += (weights?[order[k]] ?? 1) * Math.Pow(y[order[k]] - mean, 2);
+                place[order[k]] = xs.Count;
+            }
             xs.Add(keys[i]);
             ws.Add(w);
             ys.Add(mean);
@@ -55,7 +86,7 @@ public sealed class SmoothingSpline
         if (xs.Count < 3)
             return (null, $"a smoothing spline needs at least 3 distinct values but there {(xs.Count == 1 ? "is 1" : $"are {xs.Count}")}");
         double origin = xs[0], range = xs[^1] - xs[0];
-        return (new SmoothingSpline([.. xs.Select(v => (v - origin) / range)], [.. ws], [.. ys], origin, range, within, x.Length), null);
+        return (new SmoothingSpline([.. xs.Select(v => (v - origin) / range)], [.. ws], [.. ys], origin, range, within, y, weights, place), null);
     }
 
     /// <summary>Fit with a given stiffness; lambda belongs to x scaled to [0, 1].</summary>
@@ -152,20 +183,26 @@ public sealed class SmoothingSpline
         return Fit(Math.Exp(MathNet.Numerics.RootFinding.Brent.FindRoot(f, low, high, 1e-13, 300)));
     }
 
-    /// <summary>Fit whose stiffness minimises generalised cross-validation (or restricted likelihood).</summary>
-    public SplineFit Choose(bool reml = false, CancellationToken cancel = default)
+    /// <summary>Fit with a stiffness in units of x and y (y^2 against lambda times y''^2 per unit of x).</summary>
+    public SplineFit FitInUnits(double lambda) => Fit(lambda / Math.Pow(_range, 3));
+
+    /// <summary>
+    /// Fit whose stiffness minimises a criterion: the best of a grid of 30 over ln lambda, then golden section about it. Of several
+    /// local minima the lowest one on the grid is taken.
+    /// </summary>
+    public SplineFit Choose(SplineCriterion criterion = SplineCriterion.Gcv, CancellationToken cancel = default)
     {
         double low = Math.Log(0.01 / (Math.Pow(Math.PI, 4) * Math.Pow(Count, 3))), high = Math.Log(10.0 * Count);
         const int Grid = 30;
-        double Score(double l) => Fit(Math.Exp(l)) is var fit && reml ? fit.Reml : Fit(Math.Exp(l)).Gcv;
-        double[] grid = [.. Enumerable.Range(0, Grid).Select(i => low + (high - low) * i / (Grid - 1))];
-        double[] scores = new double[Grid];
-        for (int i = 0; i < Grid; i++)
+        double Score(double l)
         {
             cancel.ThrowIfCancellationRequested();
-            scores[i] = Score(grid[i]);
+            var fit = Fit(Math.Exp(l));
+            double score = criterion switch { SplineCriterion.Reml => fit.Reml, SplineCriterion.LeaveOneOut => fit.LeaveOneOut(), SplineCriterion.Aicc => fit.Aicc, _ => fit.Gcv };
+            return double.IsNaN(score) ? double.PositiveInfinity : score;
         }
-        int best = Array.IndexOf(scores, scores.Where(s => !double.IsNaN(s)).Min());
+        double[] grid = [.. Enumerable.Range(0, Grid).Select(i => low + (high - low) * i / (Grid - 1))], scores = [.. grid.Select(Score)];
+        int best = Array.IndexOf(scores, scores.Min());
         double a = grid[Math.Max(0, best - 1)], b = grid[Math.Min(Grid - 1, best + 1)];
         const double Golden = 0.3819660112501051;
         double x = a + Golden * (b - a), y = b - Golden * (b - a), fx = Score(x), fy = Score(y);
@@ -248,28 +285,24 @@ public sealed class SmoothingSpline
             return (6 * t * (1 - t) * d + (1 - t) * (1 - 3 * t) * _slope[i] + t * (3 * t - 2) * _slope[i + 1]) / _problem._range;
         }
 
-        /// <summary>Leave-one-out residual mean square for fixed stiffness, exact by the hat diagonal; each tied record has its share of the leverage.</summary>
-        public double LeaveOneOut(double[] x, double[] y)
+        /// <summary>Leave-one-out residual mean square for fixed stiffness, exact by the hat diagonal; each tied record has its share of the leverage by weight.</summary>
+        public double LeaveOneOut()
         {
             double sum = 0;
-            for (int i = 0; i < x.Length; i++)
+            for (int i = 0; i < _problem.Count; i++)
             {
-                double z = (x[i] - _problem._origin) / _problem._range;
-                int k = Nearest(z);
-                double share = _leverage[k] / _problem._w[k];
-                sum += Math.Pow((y[i] - _value[k]) / (1 - share), 2);
+                int k = _problem._place[i];
+                double share = _leverage[k] * (_problem._weights?[i] ?? 1) / _problem._w[k], rest = (_problem._y[i] - _value[k]) / (1 - share);
+                sum += rest * rest;
             }
-            return sum / x.Length;
+            return sum / _problem.Count;
         }
 
-        private int Nearest(double z)
-        {
-            int i = Array.BinarySearch(_problem._x, z);
-            if (i >= 0)
-                return i;
-            i = Math.Clamp(~i, 1, _problem._x.Length - 1);
-            return z - _problem._x[i - 1] < _problem._x[i] - z ? i - 1 : i;
-        }
+        /// <summary>Fitted value of each record, in the order they came in.</summary>
+        public double[] FittedValues() => [.. _problem._place.Select(k => _value[k])];
+
+        /// <summary>Own weight of each record in its fitted value.</summary>
+        public double[] Hat() => [.. _problem._place.Select((k, i) => _leverage[k] * (_problem._weights?[i] ?? 1) / _problem._w[k])];
 
         private double Hermite(double z, double[] value, double[] slope)
         {

@@ -81,16 +81,29 @@ public sealed class SmoothingReferenceTests
         var problem = SmoothingSpline.Of(x, y).Problem!;
         foreach (var v in c.GetProperty("values").EnumerateArray())
         {
-            if (!v.GetProperty("kind").GetString()!.StartsWith("fixed_df", StringComparison.Ordinal))
+            string kind = v.GetProperty("kind").GetString()!;
+            bool optimum = kind.EndsWith("optimum", StringComparison.Ordinal);
+            var fit = kind.StartsWith("fixed_df", StringComparison.Ordinal) ? problem.FitDf(Number(v.GetProperty("df")))
+                : optimum ? problem.Choose(kind == "gcv_optimum" ? SplineCriterion.Gcv : SplineCriterion.LeaveOneOut)
+                : problem.FitInUnits(Number(v.GetProperty("lambda_")));
+            if (optimum)
+            {
+                // with tied x the score can fall again towards interpolation, at a stiffness outside the range that is searched here
+                if (Number(v.GetProperty("lambda_")) / Math.Pow(x.Max() - x.Min(), 3) < 0.01 / (Math.Pow(Math.PI, 4) * Math.Pow(x.Length, 3)))
+                    continue;
+                bool gcv = kind == "gcv_optimum";
+                Near(Number(v.GetProperty("df")), fit.Df, 1e-4, $"{id} {kind} df");
+                Near(Number(v.GetProperty(gcv ? "gcv" : "loo_cv_mse")), gcv ? fit.Gcv : fit.LeaveOneOut(), 1e-7, $"{id} {kind} score");
                 continue;
-            var fit = problem.FitDf(Number(v.GetProperty("df")));
+            }
+            Near(Number(v.GetProperty("df")), fit.Df, 1e-8, $"{id} {kind} df");
             double[] at = Numbers(v.GetProperty("points")), want = Numbers(v.GetProperty("fitted_at_points"));
             for (int g = 0; g < at.Length; g++)
                 Near(want[g], fit.Evaluate(at[g]), 1e-7, $"df {v.GetProperty("df")} at {at[g]}", 1e-8);
             Near(Number(v.GetProperty("lambda_")), fit.LambdaInUnits, 1e-6, "lambda");
             Near(Number(v.GetProperty("rss")), fit.Rss, 1e-7, "rss");
             Near(Number(v.GetProperty("gcv")), fit.Gcv, 1e-7, "gcv");
-            Near(Number(v.GetProperty("loo_cv_mse")), fit.LeaveOneOut(x, y), 1e-7, "leave-one-out");
+            Near(Number(v.GetProperty("loo_cv_mse")), fit.LeaveOneOut(), 1e-7, "leave-one-out");
         }
     }
 
@@ -125,6 +138,104 @@ public sealed class SmoothingReferenceTests
         double[] got = fit.FittedValues();
         for (int i = 0; i < 21; i++)
             Assert.Equal(want[i], got[i], 6e-6);
+    }
+
+    [Theory]
+    [InlineData(0, 0.4, false)]
+    [InlineData(1, 0.15, true)]
+    [InlineData(2, 0.6, true)]
+    [InlineData(2, 1.7, false)]
+    public void Windows_by_power_sums_agree_with_orthogonal_decomposition(int degree, double span, bool weighted)
+    {
+        var random = new Random(5);
+        const int N = 120;
+        // ties and a gap, far from zero
+        double[] x = [.. Enumerable.Range(0, N).Select(i => 5000 + (i % 3 == 0 ? Math.Round(random.NextDouble() * 10) : random.NextDouble() * 10 + (i % 2) * 20))], y = [.. x.Select(v => 1e4 + Math.Sin(v) + random.NextDouble())];
+        double[]? w = weighted ? [.. x.Select(_ => 0.5 + random.NextDouble())] : null;
+        var fit = LocalRegression.Of([x], y, new LocalRegressionOptions { Degree = degree, Span = span }, w).Fit!;
+        int q = fit.Neighbours;
+        for (double at = 5000; at < 5030; at += 1.3)
+        {
+            double[] distance = [.. x.Select(v => Math.Abs(v - at))];
+            double h = distance.Order().ElementAt(q - 1) * Math.Max(1, span);
+            int[] rows = [.. Enumerable.Range(0, N).Where(i => distance[i] < h)];
+            double[] weights = [.. rows.Select(i => Math.Pow(1 - Math.Pow(distance[i] / h, 3), 3) * (w?[i] ?? 1))];
+            double[] l = LocalSolve.Row([[.. rows.Select(i => x[i] - at)]], weights, degree)!;
+            Near(rows.Select((i, k) => l[k] * (y[i] - 1e4)).Sum(), fit.Evaluate([at]) - 1e4, 1e-8, $"at {at}", 1e-9);
+            double[] row = fit.OperatorRow([at])!;
+            for (int k = 0; k < rows.Length; k++)
+                Assert.Equal(l[k], row[rows[k]], 1e-9);
+        }
+    }
+
+    [Fact]
+    public void Residual_moments_by_random_signs_agree_with_the_exact_ones()
+    {
+        var random = new Random(6);
+        double[] x = [.. Enumerable.Range(0, 1600).Select(_ => random.NextDouble())], y = [.. x.Select(v => v + random.NextDouble())];
+        var part = Enumerable.Range(0, 1400).ToArray();
+        var s = LocalRegression.Of([x], y, new LocalRegressionOptions { Span = 0.3 }).Fit!.Statistics();
+        var exact = LocalRegression.Of([[.. part.Select(i => x[i])]], [.. part.Select(i => y[i])], new LocalRegressionOptions { Span = 0.3 }).Fit!.Statistics();
+        // what the fit takes from the degrees of freedom hardly depends on n
+        Assert.Equal(1400 - exact.Delta2, 1600 - s.Delta2, 1.0);
+        Assert.Equal(1400 - exact.Delta1, 1600 - s.Delta1, 0.2);
+    }
+
+    [Fact]
+    public void Leaving_out_is_a_refit_without_the_record_whatever_the_order_of_the_rows()
+    {
+        var random = new Random(9);
+        double[] x = [.. Enumerable.Range(0, 60).Select(_ => Math.Round(random.NextDouble() * 20))], y = [.. x.Select(v => v * v + random.NextDouble())];
+        var options = new LocalRegressionOptions { Span = 0.45 };
+        double[] left = LocalRegression.Of([x], y, options).Fit!.LeaveOneOut();
+        for (int i = 0; i < 60; i += 7)
+        {
+            int k = i;
+            var rest = LocalRegression.Of([[.. x.Where((_, j) => j != k)]], [.. y.Where((_, j) => j != k)], options).Fit!;
+            Near(rest.Evaluate([x[i]]), left[i], 1e-10, $"record {i}");
+        }
+        int[] order = [.. Enumerable.Range(0, 60).Reverse()];
+        double[] turned = LocalRegression.Of([[.. order.Select(i => x[i])]], [.. order.Select(i => y[i])], options).Fit!.LeaveOneOut();
+        for (int i = 0; i < 60; i++)
+            Near(left[i], turned[59 - i], 1e-10, "turned");
+    }
+
+    [Fact]
+    public void A_resample_is_a_refit_with_the_records_repeated()
+    {
+        var random = new Random(3);
+        double[] x = [.. Enumerable.Range(0, 80).Select(_ => random.NextDouble() * 5)], y = [.. x.Select(v => Math.Cos(v) + random.NextDouble())];
+        var options = new LocalRegressionOptions { Span = 0.5 };
+        int[] units = [.. Enumerable.Range(0, 80).Select(i => i / 4)], counts = Gaugeyard.Statistics.Resampling.ResampleCounts.Of(units, 20, 11, 3);
+        double[] at = [0.3, 1.1, 2.5, 4.4];
+        double[] curve = LocalBootstrap.Curves(x, y, null, at, options, _ => counts, 1)[0];
+        int[] rows = [.. Enumerable.Range(0, 80).SelectMany(i => Enumerable.Repeat(i, counts[i]))];
+        var refit = LocalRegression.Of([[.. rows.Select(i => x[i])]], [.. rows.Select(i => y[i])], options).Fit!;
+        for (int g = 0; g < at.Length; g++)
+            Near(refit.Evaluate([at[g]]), curve[g], 1e-10, $"at {at[g]}");
+    }
+
+    [Fact]
+    public void A_long_record_is_thinned_only_for_its_summary_figures()
+    {
+        var random = new Random(4);
+        double[] x = [.. Enumerable.Range(0, 41_000).Select(_ => random.NextDouble())], y = [.. x.Select(v => Math.Sin(6 * v) + 0.3 * (random.NextDouble() - 0.5))];
+        var fit = LocalRegression.Of([x], y, new LocalRegressionOptions { Span = 0.1 }).Fit!;
+        var s = fit.Statistics();
+        Assert.Equal(0.3 / Math.Sqrt(12), s.S, 2e-3);
+        Assert.Equal(fit.Evaluate([x[123]]), s.Fitted[123], 1e-3);
+        Assert.InRange(s.Trace, 15, 60);
+    }
+
+    [Fact]
+    public void Work_can_be_stopped()
+    {
+        using var stop = new CancellationTokenSource();
+        stop.Cancel();
+        double[] x = [.. Enumerable.Range(0, 100).Select(i => (double)i)];
+        var fit = LocalRegression.Of([x], x, new LocalRegressionOptions()).Fit!;
+        Assert.ThrowsAny<OperationCanceledException>(() => fit.Statistics(cancel: stop.Token));
+        Assert.ThrowsAny<OperationCanceledException>(() => LocalBootstrap.Curves(x, x, null, [1.0], fit.Options, _ => [.. Enumerable.Repeat(1, 100)], 10, null, stop.Token));
     }
 
     [Fact]
