@@ -132,6 +132,7 @@ class Matrix {
     this.key.setAttribute("aria-label", "Colours");
     this.canvas = make("canvas", { className: "pairs-canvas" });
     this.canvas.setAttribute("aria-hidden", "true");
+    this.canvas.dataset.picture = "matrix";
     this.over = make("canvas", { className: "pairs-over" });
     this.over.tabIndex = 0;
     this.over.setAttribute("role", "application");
@@ -141,16 +142,16 @@ class Matrix {
     this.said.setAttribute("aria-live", "polite");
     this.stage = make("div", { className: "pairs-stage" }, this.canvas, this.over, this.tip);
     this.beyond = make("span", {});
-    this.closer = make("button", { type: "button", className: "pairs-link", hidden: true, onclick: () => { this.whole = !this.whole; this.measure(); this.draw(); } });
+    this.closer = make("button", { type: "button", className: "quiet", hidden: true, onclick: () => { this.whole = !this.whole; this.measure(); this.draw(); } });
     this.gestures = make("div", { className: "pairs-gestures" });
     this.gestures.setAttribute("role", "group");
     this.gestures.setAttribute("aria-label", "Select by");
     for (const [kind, text] of [["box", "Box"], ["lasso", "Lasso"]]) {
-      const b = make("button", { type: "button", textContent: text, className: "pairs-gesture", onclick: () => { this.gesture = kind; this.markGesture(); } });
+      const b = make("button", { type: "button", textContent: text, className: "chip", onclick: () => { this.gesture = kind; this.markGesture(); } });
       b.dataset.kind = kind;
       this.gestures.append(b);
     }
-    this.clear = make("button", { type: "button", className: "pairs-link", textContent: "Clear selection", hidden: true, onclick: () => this.clearSelection() });
+    this.clear = make("button", { type: "button", className: "quiet", textContent: "Clear selection", hidden: true, onclick: () => this.clearSelection() });
     this.ranges = make("details", { className: "pairs-ranges" }, make("summary", { textContent: "Select by range" }));
     this.rangeForm = make("div", { className: "pairs-range" });
     this.ranges.append(this.rangeForm);
@@ -215,8 +216,8 @@ class Matrix {
     const choose = add => this.selectRange(+pick.value, from.value === "" ? -Infinity : +from.value, to.value === "" ? Infinity : +to.value, add);
     this.rangeForm.replaceChildren(
       make("label", { textContent: "Reading " }, pick), make("label", { textContent: "from " }, from), make("label", { textContent: "to " }, to),
-      make("button", { type: "button", className: "pairs-gesture", textContent: "Select", onclick: () => choose(false) }),
-      make("button", { type: "button", className: "pairs-gesture", textContent: "Select within selection", onclick: () => choose(true) }));
+      make("button", { type: "button", className: "chip", textContent: "Select", onclick: () => choose(false) }),
+      make("button", { type: "button", className: "chip", textContent: "Select within selection", onclick: () => choose(true) }));
   }
 
   // ---- drawing
@@ -269,7 +270,8 @@ class Matrix {
     next.width = Math.round(width * ratio); next.height = Math.round(layout.height * ratio);
     const g = next.getContext("2d");
     g.scale(ratio, ratio);
-    g.clearRect(0, 0, width, layout.height);
+    g.fillStyle = this.colour.sheet;
+    g.fillRect(0, 0, width, layout.height);
     this.paintKey(styles);
     const work = [];
     if (layout.large) work.push(() => this.drawPanel(g, { i: this.pair[0], j: this.pair[1], ...layout.large }, true, styles, ids));
@@ -621,20 +623,7 @@ class Matrix {
 
   async picture() {
     await this.drawn;
-    const out = document.createElement("canvas");
-    out.width = this.canvas.width; out.height = this.canvas.height;
-    const g = out.getContext("2d");
-    g.fillStyle = this.colour.sheet;
-    g.fillRect(0, 0, out.width, out.height);
-    g.drawImage(this.canvas, 0, 0);
-    return new Promise(done => out.toBlob(done, "image/png"));
-  }
-
-  async savePng(name) {
-    const address = URL.createObjectURL(await this.picture()), a = document.createElement("a");
-    a.href = address; a.download = name;
-    a.click();
-    setTimeout(() => URL.revokeObjectURL(address), 10000);
+    return new Promise(done => this.canvas.toBlob(done, "image/png"));
   }
 
   /** The picture as bytes, for a pinned result. */
@@ -660,12 +649,4 @@ function fit(g, text, width) {
 function short(value, decimals) {
   const size = Math.abs(value);
   return size >= 1e6 || (size > 0 && size < 1e-4) ? value.toExponential(1).replace("-", "−") : say(value, Math.min(decimals, 6));
-}
-
-/** Hands a text to the person as a file. */
-export function saveText(name, text) {
-  const address = URL.createObjectURL(new Blob(["\ufeff", text], { type: "text/csv;charset=utf-8" })), a = document.createElement("a");
-  a.href = address; a.download = name;
-  a.click();
-  setTimeout(() => URL.revokeObjectURL(address), 10000);
 }
