@@ -92,6 +92,7 @@ public sealed record GroupsQuestion : Question<GroupsAnswer>
             BetweenVehicleSd = split is null ? null : Math.Sqrt(split.Between),
             WithinVehicleSd = split is null ? null : Math.Sqrt(split.Within),
             RepeatabilitySd = split is null ? null : Math.Sqrt(split.PooledWithin),
+            Points = sample.VehicleOf is null ? runs : VehicleMean.OfEach(runs, vehicles).Means,
         };
         if (Unit.Find(unit) is not { Family: UnitFamily.Economy or UnitFamily.Consumption } known_)
             return figures;
@@ -230,6 +231,10 @@ public sealed record ReadingFigures
     public double? WithinVehicleSd { get; init; }
 
     public double? RepeatabilitySd { get; init; }
+
+    /// <summary>Mean of each vehicle, or every record where vehicles are not told apart, for the picture.</summary>
+    [System.Text.Json.Serialization.JsonIgnore]
+    public IReadOnlyList<double> Points { get; init; } = [];
 
     public ConsumptionFigures? AsConsumption { get; init; }
 

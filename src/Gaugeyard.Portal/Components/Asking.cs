@@ -27,7 +27,6 @@ public sealed class Asking<TAnswer>(Answerer answerer, Action changed) : IAsking
     where TAnswer : Answer
 {
     private CancellationTokenSource? _stop;
-    private Question<TAnswer>? _asked;
     private string? _askedOf;
 
     /// <summary>The last answer; null before the first and after a refusal.</summary>
@@ -42,15 +41,15 @@ public sealed class Asking<TAnswer>(Answerer answerer, Action changed) : IAsking
     public string? Fault { get; private set; }
 
     /// <summary>Asks, unless the very same question was asked last.</summary>
-    /// <param name="again">Asks even then.</param>
-    public async Task AskAsync(string runSetId, Question<TAnswer> question, bool again = false)
+    /// <param name="revision">Revision of the run set, so that a new one is asked again.</param>
+    public async Task AskAsync(string runSetId, Question<TAnswer> question, int revision)
     {
-        string key = runSetId + WireFormat.Fingerprint("", question);
-        if (!again && key == _askedOf)
+        string key = $"{runSetId}/{revision}/{WireFormat.Fingerprint("", question)}";
+        if (key == _askedOf)
             return;
         _stop?.Cancel();
         var stop = _stop = new CancellationTokenSource();
-        (_asked, _askedOf, Working, Progress, Refusal, Fault) = (question, key, true, null, null, null);
+        (_askedOf, Working, Progress, Refusal, Fault) = (key, true, null, null, null);
         changed();
         try
         {
