@@ -35,6 +35,7 @@ app.UseAntiforgery();
 app.MapStaticAssets();
 app.MapHealth();
 app.MapApi();
+app.MapIncoming();
 app.MapPages();
 await app.RunAsync();
 

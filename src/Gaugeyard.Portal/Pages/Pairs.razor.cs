@@ -46,7 +46,7 @@ public sealed partial class Pairs : RunSetPage
             await _standouts.AskAsync(Id, new StandoutsQuestion
             {
                 Revision = _content.Revision, Slice = Desk.Slice, Readings = _readings, Among = _among, Cut = double.Parse(_cut, System.Globalization.CultureInfo.InvariantCulture),
-            });
+            }, _content.Revision);
     }
 
     private void Select(MatrixSelection selection)
