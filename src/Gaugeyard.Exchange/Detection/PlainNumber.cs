@@ -1,3 +1,4 @@
+using System.Runtime.CompilerServices;
 using System.Globalization;
 using csFastFloat;
 
@@ -18,6 +19,7 @@ internal static class PlainNumber
 
     private static readonly double[] Tens = [1, 1e1, 1e2, 1e3, 1e4, 1e5, 1e6, 1e7, 1e8, 1e9, 1e10, 1e11, 1e12, 1e13, 1e14, 1e15, 1e16, 1e17, 1e18];
 
+    [MethodImpl(MethodImplOptions.AggressiveOptimization)]
     public static bool TryParse(ReadOnlySpan<char> text, char mark, out double value, out Form form)
     {
         value = 0;

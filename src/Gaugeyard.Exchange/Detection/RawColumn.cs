@@ -1,4 +1,5 @@
 using System.Globalization;
+using System.Runtime.CompilerServices;
 using System.Runtime.InteropServices;
 
 namespace Gaugeyard.Exchange.Detection;
@@ -69,6 +70,7 @@ internal sealed class RawColumn
 
     public static int CodeOf(double cell) => (int)BitConverter.DoubleToInt64Bits(cell);
 
+    [MethodImpl(MethodImplOptions.AggressiveOptimization)]
     public void Add(ReadOnlySpan<char> text)
     {
         if (text.IsEmpty)
@@ -119,6 +121,7 @@ internal sealed class RawColumn
     }
 
     /// <summary>Appends the cells of a column of the same settings that follows this one in the file.</summary>
+    [MethodImpl(MethodImplOptions.AggressiveOptimization)]
     public void Append(RawColumn next)
     {
         var codes = new int[next._texts.Count];
@@ -153,6 +156,22 @@ internal sealed class RawColumn
         Unrecoverable += next.Unrecoverable;
     }
 
+    /// <summary>Empties the column for the next stretch of the file, keeping its memory.</summary>
+    public void Clear()
+    {
+        Count = Numbers = Decimals = ThreeDecimals = Unrecoverable = 0;
+        if (_texts.Count > 1)
+        {
+            _texts.RemoveRange(1, _texts.Count - 1);
+            _counts.RemoveRange(1, _counts.Count - 1);
+            _firstRows.RemoveRange(1, _firstRows.Count - 1);
+            _index.Clear();
+            _index.Add("", Empty);
+        }
+        _counts[Empty] = 0;
+        _firstRows[Empty] = -1;
+    }
+
     /// <summary>Cuts trailing cells off.</summary>
     public void Truncate(int count)
     {
@@ -182,6 +201,7 @@ internal sealed class RawColumn
     /// <summary>Hands the cells over for good as the values of a number column.</summary>
     /// <param name="valueOfText">Value by text code; NaN for missing.</param>
     /// <param name="codes">Text code by row, 0 at numbers and empty cells; null when every cell was a number or empty.</param>
+    [MethodImpl(MethodImplOptions.AggressiveOptimization)]
     public double[] TakeCells(Func<int, double> valueOfText, out int[]? codes)
     {
         var values = _cells.Length == Count ? _cells : _cells.AsSpan(0, Count).ToArray();

@@ -1,3 +1,4 @@
+using System.Runtime.CompilerServices;
 using Gaugeyard.Exchange.Detection;
 using nietras.SeparatedValues;
 
@@ -13,7 +14,7 @@ internal sealed class SegmentParser(ReadPlan plan, char delimiter, string fileNa
 
     public List<RawColumn> Columns { get; } = [];
 
-    public RowMap Rows { get; } = new();
+    public RowMap Rows { get; private set; } = new();
 
     public List<int> Repeats { get; } = [];
 
@@ -23,7 +24,7 @@ internal sealed class SegmentParser(ReadPlan plan, char delimiter, string fileNa
 
     public SegmentParser Parse(Segment segment)
     {
-        for (int c = 0; c < _width; c++)
+        while (Columns.Count < _width)
             AddColumn();
         if (segment.Regular)
             ParseRegular(segment);
@@ -34,6 +35,7 @@ internal sealed class SegmentParser(ReadPlan plan, char delimiter, string fileNa
         return this;
     }
 
+    [MethodImpl(MethodImplOptions.AggressiveOptimization)]
     private void ParseRegular(Segment segment)
     {
         using var reader = new Sep(delimiter).Reader(o => o with
@@ -88,6 +90,17 @@ internal sealed class SegmentParser(ReadPlan plan, char delimiter, string fileNa
                     Grow(c - _first, row[c].Span);
             EndRow();
         }
+    }
+
+    /// <summary>Empties the parser for another segment, keeping its memory.</summary>
+    public void Clear()
+    {
+        Columns.RemoveRange(_width, Columns.Count - _width);
+        foreach (var column in Columns)
+            column.Clear();
+        Rows = new RowMap();
+        Repeats.Clear();
+        Ragged = Short = default;
     }
 
     private void ParseForgiving(Segment segment)

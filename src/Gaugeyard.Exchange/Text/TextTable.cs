@@ -120,6 +120,7 @@ internal sealed class TextTable : ITableSource
         var joined = new Joined(plan, _limits, _file.Name);
         int side = Math.Clamp(Environment.ProcessorCount, 1, 8);
         var ahead = new Queue<(Task<SegmentParser> Work, Segment Segment)>();
+        var idle = new Stack<SegmentParser>();
         bool ended = true;
         long charsJoined = 0, bytesRead = 0, charsRead = 0;
         using var stream = _file.Open();
@@ -128,7 +129,12 @@ internal sealed class TextTable : ITableSource
         void JoinOldest()
         {
             var (work, segment) = ahead.Dequeue();
-            joined.Add(work.GetAwaiter().GetResult());
+            var parser = work.GetAwaiter().GetResult();
+            if (joined.Add(parser))
+            {
+                parser.Clear();
+                idle.Push(parser);
+            }
             charsJoined += segment.Length;
             ArrayPool<char>.Shared.Return(segment.Buffer);
             progress?.Report(Math.Min(1, (double)bytesRead / length * charsJoined / Math.Max(1, charsRead)));
@@ -147,7 +153,8 @@ internal sealed class TextTable : ITableSource
                     break;
                 }
                 int capacity = Math.Max(256, segment.Length / Math.Max(8, plan.Layout.Names.Length * 4));
-                ahead.Enqueue((Task.Run(() => new SegmentParser(plan, Delimiter, _file.Name, capacity).Parse(segment), cancellationToken), segment));
+                var parser = idle.Count > 0 ? idle.Pop() : new SegmentParser(plan, Delimiter, _file.Name, capacity);
+                ahead.Enqueue((Task.Run(() => parser.Parse(segment), cancellationToken), segment));
             }
             while (ahead.Count > 0)
                 JoinOldest();
@@ -257,8 +264,10 @@ internal sealed class TextTable : ITableSource
 
         public RowMap Rows { get; } = new();
 
-        public void Add(SegmentParser segment)
+        /// <summary>Appends a segment's columns; false when they were taken over and must not be used again.</summary>
+        public bool Add(SegmentParser segment)
         {
+            bool copied = _columns is not null;
             if (_columns is null)
                 _columns = segment.Columns;
             else
@@ -284,6 +293,7 @@ internal sealed class TextTable : ITableSource
             _short = (_short.Count == 0 ? segment.Short.First : _short.First, _short.Count + segment.Short.Count);
             if (Rows.Count > limits.Records || (long)Rows.Count * _columns.Count > limits.Cells)
                 throw new UnreadableFileException($"{fileName} has more than {limits.Records:N0} records or {limits.Cells:N0} cells, the limits for one file. Split it and upload the parts.");
+            return copied;
         }
 
         public void Truncate(int count)

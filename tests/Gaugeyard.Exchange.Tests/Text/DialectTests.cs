@@ -48,6 +48,44 @@ public class DialectTests
         Assert.Equal(ColumnRole.Reading, table.Column("city").Definition.Role);
     }
 
+    [Fact]
+    public void ALongFileInManySegmentsIsTheSameAsItsLines()
+    {
+        // several segments, with quoted line ends and stray quotes on the way, some of them at the cuts
+        var text = new StringBuilder("run,vehicle,city,remarks\n");
+        int line = 2;
+        var lines = new List<int>();
+        const int Rows = 150_000;
+        for (int i = 0; i < Rows; i++)
+        {
+            lines.Add(line);
+            text.Append('R').Append(i).Append(",V").Append(i % 977).Append(',').Append(i % 1000 == 7 ? "7.4x" : (i % 300 / 10.0).ToString("R")).Append(',');
+            if (i % 501 == 0)
+                text.Append("\"first, \"\"quoted\"\"\nsecond\"");
+            else if (i > Rows / 2 && i % 90_001 == 0)
+                text.Append("17\" wheels");
+            else
+                text.Append("none to speak of in this run");
+            text.Append(i % 3 == 0 ? "\r\n" : "\n");
+            line += i % 501 == 0 ? 2 : 1;
+        }
+        var table = Scratch.Read(text.ToString());
+        Assert.Equal(Rows, table.Records);
+        var city = table.Numbers("city");
+        var vehicle = (CodedColumn)table.Column("vehicle");
+        var remarks = (CodedColumn)table.Column("remarks");
+        for (int i = 0; i < Rows; i++)
+        {
+            Assert.Equal(i % 1000 == 7 ? double.NaN : i % 300 / 10.0, city[i]);
+            Assert.Equal(i % 977, vehicle.Codes[i]);
+            if (i % 501 == 0)
+                Assert.Equal("first, \"quoted\"\nsecond", remarks.TextAt(i));
+        }
+        Assert.Equal(Rows / 1000, table.Marks["city"].Count);
+        Assert.Equal("17\" wheels", remarks.TextAt(90_001));
+        Assert.Contains(table.Findings, f => f.Record == 3008 && f.Text.StartsWith($"row {lines[3007]}, column city", StringComparison.Ordinal));
+    }
+
     private static byte[] Encode(string text, string encoding) => encoding switch
     {
         "utf-8" => new UTF8Encoding(false).GetBytes(text),
