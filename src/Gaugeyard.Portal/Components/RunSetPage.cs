@@ -55,7 +55,8 @@ public abstract class RunSetPage : ComponentBase, IDisposable
     {
         Missing = await Desk.LoadAsync() is null;
         _revision = RunSet?.Revision;
-        if (!Missing)
+        // the first, static rendering shows the frame at once; questions are put when the window is live
+        if (!Missing && RendererInfo.IsInteractive)
             await AskAsync();
     }
 
@@ -73,7 +74,7 @@ public abstract class RunSetPage : ComponentBase, IDisposable
 
     /// <summary>Columns of some kinds as options, readings first.</summary>
     protected IReadOnlyList<(string Value, string Text)> Columns(Func<ColumnSummary, bool> which) =>
-        [.. (RunSet?.Columns ?? []).Where(which).OrderBy(c => c.Definition.Role == ColumnRole.Reading ? 0 : 1).Select(c => (c.Definition.Name, c.Definition.Name))];
+        [.. (RunSet?.Columns ?? []).Where(which).OrderBy(c => c.Definition.Role != ColumnRole.Reading ? 2 : Unit.Find(c.Definition.Unit)?.Family is UnitFamily.Consumption or UnitFamily.Economy ? 0 : 1).Select(c => (c.Definition.Name, c.Definition.Name))];
 
     /// <summary>Number columns.</summary>
     protected IReadOnlyList<(string Value, string Text)> NumberColumns => Columns(c => c.Definition.Kind == ColumnKind.Number);
@@ -83,8 +84,15 @@ public abstract class RunSetPage : ComponentBase, IDisposable
         [.. (RunSet?.Columns ?? []).Where(c => c.Definition.Kind is ColumnKind.Category or ColumnKind.OrderedCategory or ColumnKind.YesNo && c.Definition.Role is not ColumnRole.RunName && c.Levels?.Count is > 1)
             .OrderBy(c => c.Definition.Role == ColumnRole.Vehicle ? 1 : 0).Select(c => (c.Definition.Name, c.Definition.Name))];
 
-    /// <summary>The first reading, or the first number column; null when there is none.</summary>
-    protected string? FirstReading => (RunSet?.Columns.FirstOrDefault(c => c.Definition is { Role: ColumnRole.Reading, Kind: ColumnKind.Number }) ?? RunSet?.Columns.FirstOrDefault(c => c.Definition.Kind == ColumnKind.Number))?.Definition.Name;
+    /// <summary>The first consumption or economy reading, else the first reading, else the first number column; null when there is none.</summary>
+    protected string? FirstReading => Best(RunSet)?.Definition.Name;
+
+    private static ColumnSummary? Best(RunSetInfo? set)
+    {
+        var numbers = set?.Columns.Where(c => c.Definition.Kind == ColumnKind.Number).ToList() ?? [];
+        return numbers.Find(c => c.Definition.Role == ColumnRole.Reading && Unit.Find(c.Definition.Unit)?.Family is UnitFamily.Consumption or UnitFamily.Economy)
+            ?? numbers.Find(c => c.Definition.Role == ColumnRole.Reading) ?? numbers.FirstOrDefault();
+    }
 
     /// <summary>Unit of a column for people.</summary>
     protected string UnitOf(string? column) => Unit.LabelOf(RunSet?.Columns.FirstOrDefault(c => c.Definition.Name == column)?.Definition.Unit);
