@@ -22,7 +22,7 @@ internal static class CategoryCurves
         {
             work.Cancel.ThrowIfCancellationRequested();
             var part = sample.Keep([.. codes.Select(c => c == k)], $"not {labels[k]}");
-            CategoryCurve None(string reason) => new(labels[k], part.Count, part.VehicleCount, reason, [], null);
+            CategoryCurve None(string reason) => new(labels[k], part.Count, part.VehicleCount, reason, [], null, null);
             if (part.Count < 3)
             {
                 curves.Add(None($"Only {Say.Count(part.Count, "record")}; a curve needs at least 3."));
@@ -38,7 +38,7 @@ internal static class CategoryCurves
             try
             {
                 var result = question.Fit(data, question.Points(data.X), work);
-                curves.Add(new CategoryCurve(labels[k], part.Count, part.VehicleCount, null, result.Points, result.Smoothing));
+                curves.Add(new CategoryCurve(labels[k], part.Count, part.VehicleCount, null, result.Points, result.Smoothing, CurveHeadline.Change(result)));
             }
             catch (Exception e) when (e is CannotAnswerException or QuestionException)
             {

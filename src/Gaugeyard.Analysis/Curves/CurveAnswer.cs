@@ -15,6 +15,9 @@ public sealed record CurveAnswer : Answer
     /// <summary>Change of the reading from one end of the points to the other, with its interval (one predictor).</summary>
     public CurveChange? Change { get; init; }
 
+    /// <summary>The further places that were to be read off.</summary>
+    public IReadOnlyList<CurvePoint>? ReadOff { get; init; }
+
     /// <summary>One curve per category where they were asked for apart.</summary>
     public IReadOnlyList<CategoryCurve>? Categories { get; init; }
 
@@ -70,7 +73,7 @@ public sealed record StraightLine(double Intercept, double Slope, double? Score,
 public sealed record CurveChange(double From, double To, double Difference, double? Low, double? High);
 
 /// <summary>The curve of one category, or the reason why there is none.</summary>
-public sealed record CategoryCurve(string Level, int Records, int? Vehicles, string? Reason, IReadOnlyList<CurvePoint> Points, SmoothingFigures? Smoothing);
+public sealed record CategoryCurve(string Level, int Records, int? Vehicles, string? Reason, IReadOnlyList<CurvePoint> Points, SmoothingFigures? Smoothing, CurveChange? Change);
 
 /// <summary>The range within which a predictor was tested.</summary>
 public sealed record TestedRange(string Column, double From, double To);

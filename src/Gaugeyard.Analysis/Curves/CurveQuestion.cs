@@ -92,6 +92,12 @@ public sealed record CurveQuestion : Question<CurveAnswer>
 
     public BandChoice? Band { get; init; }
 
+    /// <summary>Further places to read off with the same bands (one predictor); an empty list asks for a few round ones.</summary>
+    public IReadOnlyList<double>? ReadOff { get; init; }
+
+    /// <summary>Takes the stiffest choice within one standard error of the best instead of the best.</summary>
+    public bool OneStandardError { get; init; }
+
     /// <summary>A category column whose levels get curves of their own beside the common one.</summary>
     public string? By { get; init; }
 
@@ -105,8 +111,8 @@ public sealed record CurveQuestion : Question<CurveAnswer>
         if (sample.Count < 3)
             throw new CannotAnswerException($"Only {Say.Count(sample.Count, "record")} {(sample.Count == 1 ? "has" : "have")} both {Reading} and {Say.List(Against)}; a curve needs at least 3.");
         var data = CurveData.Of(sample, this);
-        double[][] points = Points(data.X);
-        var result = Fit(data, points, work);
+        double[][] grid = Points(data.X), readOff = ReadOff is null || Against.Count > 1 ? [] : [.. (ReadOff.Count > 0 ? ReadOff : RoundPlaces(data.Low[0], data.High[0])).Select(x => new[] { x })];
+        var result = Fit(data, [.. grid, .. readOff], work);
         var notes = new List<string>(result.Notes);
         if (Unit.IsEconomy(content.Find(Reading)!.Unit))
             notes.Add($"{Reading} is distance per fuel; the curve takes its own numbers. Consumption is the better scale.");
@@ -118,7 +124,8 @@ public sealed record CurveQuestion : Question<CurveAnswer>
         {
             Headline = "",
             Basis = sample.Basis(),
-            Points = result.Points,
+            Points = [.. result.Points.Take(grid.Length)],
+            ReadOff = ReadOff is null ? null : [.. result.Points.Skip(grid.Length)],
             Smoothing = result.Smoothing,
             StraightLine = result.StraightLine,
             Change = CurveHeadline.Change(result),
@@ -165,6 +172,8 @@ public sealed record CurveQuestion : Question<CurveAnswer>
             throw new QuestionException($"The confidence must lie between 0 and 1, for example 0.95, but is {Confidence}.");
         if (By is not null && (By == Reading || Against.Contains(By)))
             throw new QuestionException($"{By} is already part of the curve and cannot divide it too.");
+        if (ReadOff?.Any(v => !double.IsFinite(v)) == true || ReadOff?.Count > 1000)
+            throw new QuestionException("Every place to read off must be a finite number, and there may be at most 1000.");
         if (At?.Any(p => p.Any(v => !double.IsFinite(v))) == true)
             throw new QuestionException("Every point must be a finite number.");
         if (At?.Any(p => p.Count != Against.Count) == true)
@@ -173,6 +182,16 @@ public sealed record CurveQuestion : Question<CurveAnswer>
 
     /// <summary>Spans that are compared.</summary>
     internal IReadOnlyList<double> SpansTried => Spans is { Count: > 0 } ? Spans : UsualSpans;
+
+    private static IEnumerable<double> RoundPlaces(double low, double high)
+    {
+        double raw = (high - low) / 5;
+        if (!(raw > 0))
+            yield break;
+        double power = Math.Pow(10, Math.Floor(Math.Log10(raw))), unit = raw / power, step = power * (unit < 1.5 ? 1 : unit < 3.5 ? 2 : unit < 7.5 ? 5 : 10);
+        for (double k = Math.Ceiling(low / step); k * step <= high; k++)
+            yield return Math.Round(k * step, 12);
+    }
 
     internal double[][] Points(double[][] x)
     {

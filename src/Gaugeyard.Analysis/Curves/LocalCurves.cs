@@ -127,7 +127,7 @@ internal static class LocalCurves
     {
         if (scores.Count == 0)
             return null;
-        return scores.Where(s => s.Score is not null).MinBy(s => s.Score)?.Span
+        return (question.OneStandardError ? OneStandardError(scores) : null) ?? scores.Where(s => s.Score is not null).MinBy(s => s.Score)?.Span
             ?? throw new CannotAnswerException($"None of the spans can be fitted to {data.Y.Length} records with degree {question.Degree ?? 2}. Take wider spans or a lower degree.");
     }
 

@@ -24,7 +24,7 @@ internal static class SplineCurves
         work.Say(0.4, "fitting the curve");
         var fit = question.Df is { } df ? problem.FitDf(df) : choose switch
         {
-            ChooseBy.KFold => problem.FitDf(scores.Where(s => s.Score is not null).MinBy(s => s.Score)?.Df ?? throw new CannotAnswerException($"{question.Against[0]} has too few distinct values to choose a stiffness. State the degrees of freedom.")),
+            ChooseBy.KFold => problem.FitDf((question.OneStandardError ? OneStandardError(scores) : null) ?? scores.Where(s => s.Score is not null).MinBy(s => s.Score)?.Df ?? throw new CannotAnswerException($"{question.Against[0]} has too few distinct values to choose a stiffness. State the degrees of freedom.")),
             ChooseBy.LeaveOneOut => problem.Choose(SplineCriterion.LeaveOneOut, work.Cancel),
             ChooseBy.Aicc => problem.Choose(SplineCriterion.Aicc, work.Cancel),
             _ => problem.Choose(SplineCriterion.Gcv, work.Cancel),
