@@ -24,7 +24,7 @@ export function layoutOf(width, count) {
     large = { x: side + 2 * GAP, y: 0, w, h: Math.round(Math.min(w * .8, 560)) };
     height = Math.max(large.h, cellH * count);
   } else {
-    cellW = width / count; cellH = cellW * (count > 5 ? .9 : .8);
+    cellW = width / count; cellH = cellW * .92;
     const first = Math.ceil(count / 2), rows = first;
     large = { x: first * cellW, y: 0, w: (count - first) * cellW, h: rows * cellH - GAP };
     height = cellH * count;

@@ -8,7 +8,7 @@ import { paintMarks, paintDense, marker, histogramOf, MARKS_UP_TO, HIDDEN } from
 import { inBox, inLasso, nearest } from "./choose.js";
 import { placeLabels } from "./labels.js";
 
-const COLOURED = 6, OTHER = 6, DIM = 7, ESTIMATE = 8, RAISED = 9, PLAIN = 10, TOLD = 500;
+const COLOURED = 6, OTHER = 6, DIM = 7, ESTIMATE = 8, RAISED = 9, PLAIN = 10, TOLD = 500, RINGED = 60, MOST_TOLD = 400;
 
 export function create(host, page) {
   return new Matrix(host, page);
@@ -90,11 +90,16 @@ class Matrix {
     this.axes = this.points.values.map(v => axisOf(v, this.whole));
     this.places = this.points.values.map((v, k) => placesOf(v, this.axes[k]));
     this.missing = this.points.values.some((_, k) => this.axes[k].known < this.points.count);
+    this.sayFrame();
+  }
+
+  /** What the frame leaves at its edge, and how many rings there are. */
+  sayFrame() {
     const beyond = new Set();
     this.axes.forEach((axis, k) => axis.beyond && beyond.add(`${axis.beyond.toLocaleString("en")} of ${this.points.readings[k]}`));
     this.closer.hidden = !this.whole && beyond.size === 0;
     this.closer.textContent = this.whole ? "Look closer" : "Show everything";
-    this.beyond.textContent = beyond.size ? `Far values stand at the edge of the frame: ${[...beyond].join(", ")}. ` : "";
+    this.beyond.textContent = (this.standouts.length > RINGED ? `Ringed: the farthest ${RINGED} of ${this.standouts.length.toLocaleString("en")}${this.standouts.length >= MOST_TOLD ? " or more" : ""}. ` : "") + (beyond.size ? `Far values stand at the edge of the frame: ${[...beyond].join(", ")}. ` : "");
   }
 
   /** The most frequent levels get colour and marker; the rest is grey. */
@@ -110,7 +115,9 @@ class Matrix {
 
   setStandouts(list) {
     this.standouts = list;
-    if (this.points) this.draw();
+    if (!this.points) return;
+    this.sayFrame();
+    this.draw();
   }
 
   setCorrelations(list) {
@@ -345,7 +352,7 @@ class Matrix {
     g.strokeStyle = c.grid;
     g.lineWidth = 1;
     const x = this.axes[j], y = this.axes[i];
-    const tx = ticksOf(x.low, x.high, Math.max(2, Math.floor(frame.w / 90))), ty = ticksOf(y.low, y.high, Math.max(2, Math.floor(frame.h / 60)));
+    const tx = ticksOf(x.low, x.high, Math.max(2, Math.floor(frame.w / 60))), ty = ticksOf(y.low, y.high, Math.max(2, Math.floor(frame.h / 40)));
     g.textAlign = "right"; g.textBaseline = "middle";
     for (const t of ty.ticks) {
       const at = frame.y + (1 - (t - y.low) / (y.high - y.low)) * frame.h;
@@ -361,7 +368,8 @@ class Matrix {
 
   drawRings(g, frame, i, j, large) {
     const c = this.colour, points = [];
-    for (const s of this.standouts) {
+    // only the farthest: with more, the rings would hide what they point at
+    for (const s of this.standouts.slice(0, RINGED)) {
       const row = rowOf(this.points.records, s.record);
       if (row < 0 || (this.points.colours && this.hidden.has(this.points.colours[row]))) continue;
       const a = this.places[j][row], b = this.places[i][row];
@@ -370,10 +378,8 @@ class Matrix {
     }
     g.strokeStyle = c.standOut;
     g.lineWidth = large ? 1.8 : 1.2;
-    const many = points.length > 120;
-    g.globalAlpha = many ? .6 : 1;
-    for (const p of points) { g.beginPath(); g.arc(p.x, p.y, large ? (many ? 4.5 : 6.5) : (many ? 2.5 : 4), 0, 7); g.stroke(); }
-    g.globalAlpha = 1;
+    const many = points.length > 25;
+    for (const p of points) { g.beginPath(); g.arc(p.x, p.y, large ? (many ? 5.5 : 6.5) : (many ? 2.8 : 4), 0, 7); g.stroke(); }
     if (!large) return;
     g.font = `600 13px ${this.font}`;
     g.textBaseline = "middle"; g.textAlign = "left";

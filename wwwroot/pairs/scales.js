@@ -19,10 +19,10 @@ export function axisOf(values, whole) {
     for (let i = 0; i < values.length; i += step) if (values[i] === values[i]) some.push(values[i]);
     some.sort((a, b) => a - b);
     const at = q => some[Math.min(some.length - 1, Math.max(0, Math.round(q * (some.length - 1))))];
-    const q1 = at(.01), q3 = at(.99), room = Math.max((q3 - q1) * .6, 1e-300);
+    const q1 = at(.01), q3 = at(.99), room = Math.max((q3 - q1) * .3, 1e-300);
     if (q3 > q1) {
-      if (max - q3 > (q3 - q1) * 1.5) high = q3 + room;
-      if (q1 - min > (q3 - q1) * 1.5) low = q1 - room;
+      if (max - q3 > (q3 - q1) * .8) high = q3 + room;
+      if (q1 - min > (q3 - q1) * .8) low = q1 - room;
       if (min >= 0 && low < 0) low = 0;
     }
   }

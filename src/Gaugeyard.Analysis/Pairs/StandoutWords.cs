@@ -29,8 +29,10 @@ internal static class StandoutWords
     /// <summary>The finding.</summary>
     public static string Headline(int off, int records, int vehiclesOff, int? vehicles, bool byVehicle, int otherRuns, int otherVehicles, IReadOnlyList<StandoutExplanation> explanations, int suspects)
     {
-        string cause = explanations.Count > 0 ? " " + explanations[0].Cause
-            : suspects > 0 ? $" {Say.Sentence(Say.Count(suspects, "record looks", "records look"))} like a slip of entry." : "";
+        // one second sentence: a shared value of a category says most, then slips, then a shifted number
+        string slips = suspects > 0 ? $" {Say.Count(suspects, byVehicle ? "run looks" : "record looks", byVehicle ? "runs look" : "records look")} like a slip of entry." : "";
+        var shared = explanations.FirstOrDefault(e => e.Level is not null && e.Counted != "runs");
+        string cause = shared is not null && !(byVehicle && vehiclesOff == 0) ? " " + shared.Cause : slips.Length > 0 ? slips : explanations.Count > 0 ? " " + explanations[0].Cause : "";
         if (!byVehicle)
             return off == 0 ? $"None of {Say.Count(records, "record")} stands off from the others." : $"{Say.Number(off, 0)} of {Say.Count(records, "record")} {(off == 1 ? "stands" : "stand")} off.{cause}";
         string runs = otherRuns == 0 ? "" : $"{Say.Count(otherRuns, "single run")} of {Say.Count(otherVehicles, vehiclesOff > 0 ? "other vehicle" : "vehicle")}";

@@ -77,12 +77,12 @@ public sealed partial class Pairs : RunSetPage
 
     private string? Known(string? category) => GroupColumns.Any(c => c.Value == category) ? category : null;
 
-    /// <summary>The readings, at most four; where a file has fewer than two, other numbers as well.</summary>
+    /// <summary>The readings, then other numbers, four in all.</summary>
     private IEnumerable<string> Usual()
     {
         var numbers = _content!.Definitions.Where(d => d.Kind == ColumnKind.Number).ToArray();
         var readings = numbers.Where(d => d.Role == ColumnRole.Reading).ToArray();
-        return (readings.Length >= 2 ? readings : readings.Concat(numbers.Where(d => d.Role != ColumnRole.Reading))).Take(4).Select(d => d.Name);
+        return readings.Concat(numbers.Where(d => d.Role == ColumnRole.Attribute)).Take(4).Select(d => d.Name);
     }
 
     private string? FirstColour() => RunSet!.Columns
