@@ -844,6 +844,9 @@ internal sealed class ColumnReader
                 else
                     ticksOf[i] = ticks;
             }
+            int zoned = Enumerable.Range(1, ticksOf.Length - 1).Where(i => ticksOf[i] != DateTimeColumn.Missing && DateText.HasZone(_of._trimmed[i])).Sum(i => raw.Counts[i]);
+            if (zoned > 0)
+                _of._findings.Add(new Finding(Severity.Warning, ask.Name, null, $"column {ask.Name}: {zoned:N0} {(zoned == 1 ? "value carries" : "values carry")} a time zone; the clock time is kept as written, the zone is not"));
             var values = new long[raw.Count];
             var cells = raw.Cells;
             int known = 0;

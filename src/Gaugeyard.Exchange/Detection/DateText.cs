@@ -58,6 +58,16 @@ internal static class DateText
         return text.LastIndexOf(' ', colon);
     }
 
+    /// <summary>Whether the text carries a time zone, which a record does not keep.</summary>
+    public static bool HasZone(string trimmed)
+    {
+        int cut = CutAt(trimmed);
+        if (cut <= 0)
+            return false;
+        string time = trimmed[(cut + 1)..];
+        return time.EndsWith('Z') || time.LastIndexOfAny(['+', '-']) > 3;
+    }
+
     private static bool TryTime(string time, out long ticks)
     {
         ticks = 0;

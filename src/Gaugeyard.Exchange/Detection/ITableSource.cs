@@ -40,6 +40,9 @@ internal sealed record ReadPlan(Layout Layout, IReadOnlyList<(bool AsText, char 
 internal sealed record RawTable(List<RawColumn> Columns, RowMap Rows, bool Ended, double ShareRead, IReadOnlyList<int> Repeats, (int First, int Count) Ragged, (int First, int Count) Short)
 {
     public int Count => Rows.Count;
+
+    /// <summary>First row that holds separators only, or 0, and how many.</summary>
+    public (int First, int Count) Blank { get; init; }
 }
 
 /// <summary>Which row of the file each record stands in, kept as runs.</summary>

@@ -74,6 +74,11 @@ internal static class TableScan
         if (workbook is { HiddenRows: > 0 })
             findings.Add(new Finding(Severity.Warning, null, null, $"sheet '{workbook.Sheet}' hides {workbook.HiddenRows:N0} rows; they are read like the others"));
 
+        if (workbook?.Formulas is { Calculated: > 0 } formulas)
+            findings.Add(new Finding(Severity.Warning, null, null, $"{formulas.Calculated:N0} formulas of the workbook stand without a stored result; they were calculated while reading, check their values"));
+        if (workbook?.Formulas is { Failed: > 0 } failed)
+            findings.Add(new Finding(Severity.Warning, null, null, $"{failed.Failed:N0} formulas of the workbook stand without a stored result and could not be calculated; their cells are missing. Open the workbook in a spreadsheet program, save it and read it again"));
+
         // a column without name and without any value is only ruled space
         var kept = Enumerable.Range(0, written).Where(c => c < layout.Names.Length && layout.Names[c].Length > 0 || HasValue(raw.Columns[c])).ToList();
         bool noHeader = layout.HeaderRows.Count == 0;
@@ -240,6 +245,8 @@ internal static class TableScan
 
     private static void ReportShape(RawTable raw, Layout layout, List<Finding> findings)
     {
+        if (raw.Blank.Count > 0)
+            findings.Add(new Finding(Severity.Note, null, null, $"row {raw.Blank.First} has separators but no value{(raw.Blank.Count > 1 ? $", like {raw.Blank.Count - 1:N0} more rows" : "")}; left out"));
         if (raw.Ragged.Count > 0)
             findings.Add(new Finding(Severity.Warning, null, null, $"row {raw.Ragged.First} has more cells than there are names ({layout.Names.Length}){(raw.Ragged.Count > 1 ? $", and so have others" : "")}; the extra cells stand in columns of their own"));
         if (raw.Short.Count > 0)

@@ -14,7 +14,9 @@ internal static class WorkbookGate
     /// <param name="From1904">Whether its serial days count from 1904.</param>
     /// <param name="LastRow">Last row with a value in any sheet, from 1.</param>
     /// <param name="LastColumn">Last column with a value in any sheet, from 0.</param>
-    public sealed record Facts(bool From1904, int LastRow, int LastColumn);
+    /// <param name="BareFormulas">Formulas without a stored result.</param>
+    /// <param name="Bytes">What the parts that are read inflate to.</param>
+    public sealed record Facts(bool From1904, int LastRow, int LastColumn, int BareFormulas, long Bytes);
 
     public static Facts Check(Stream stream, string name, ReadLimits limits, CancellationToken cancellationToken)
     {
@@ -55,7 +57,7 @@ internal static class WorkbookGate
             }
         }
         stream.Position = 0;
-        return new Facts(from1904, used.LastRow, used.LastColumn);
+        return new Facts(from1904, used.LastRow, used.LastColumn, used.BareFormulas, total);
     }
 
     /// <summary>
@@ -70,7 +72,11 @@ internal static class WorkbookGate
         private int _column;
         private int _rowOfRow;
 
+        private bool _formula;
+
         public int LastRow { get; private set; }
+
+        public int BareFormulas { get; private set; }
 
         public int LastColumn { get; private set; } = -1;
 
@@ -116,13 +122,20 @@ internal static class WorkbookGate
                 int i = 0, column = 0;
                 while (i < at.Length && i < 4 && at[i] is >= (byte)'A' and <= (byte)'Z')
                     column = column * 26 + (at[i++] - 'A' + 1);
+                _formula = false;
                 _column = i > 0 ? column - 1 : _column + 1;
                 _row = i > 0 && System.Buffers.Text.Utf8Parser.TryParse(at[i..], out int row, out _) ? row : _rowOfRow;
             }
-            else if (name.SequenceEqual("v"u8) || name.SequenceEqual("is"u8))
+            else if (name.SequenceEqual("v"u8) || name.SequenceEqual("is"u8) || name.SequenceEqual("f"u8))
             {
                 LastRow = Math.Max(LastRow, _row);
                 LastColumn = Math.Max(LastColumn, _column);
+                _formula = name[0] == (byte)'f';
+            }
+            else if (_formula && tag.Length > 1 && tag[0] == (byte)'/' && tag[^1] == (byte)'c' && (tag.Length == 2 || tag[^2] == (byte)':'))
+            {
+                BareFormulas++;
+                _formula = false;
             }
         }
 

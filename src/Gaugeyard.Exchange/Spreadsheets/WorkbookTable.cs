@@ -29,6 +29,8 @@ internal sealed class WorkbookTable : ITableSource
             From1904 = facts.From1904;
             _lastRow = facts.LastRow;
             _lastColumn = facts.LastColumn;
+            if (facts.BareFormulas > 0)
+                Formulas = FormulaResults.Of(file, facts.BareFormulas, facts.Bytes, cancellationToken);
         }
         if (_range is null && _lastColumn >= limits.Columns)
             throw TooWide(_lastRow, _lastColumn + 1);
@@ -57,6 +59,15 @@ internal sealed class WorkbookTable : ITableSource
     private readonly Dictionary<string, List<HeadRow>> _textHeads = new(StringComparer.Ordinal);
 
     public bool From1904 { get; }
+
+    /// <summary>Results of formulas that the workbook stores without one; null when there are none.</summary>
+    public FormulaResults? Formulas { get; }
+
+    // rows are counted by the reading loops, since the reader does not tell them
+    private int _row;
+
+    private object? ValueAt(IExcelDataReader reader, int at) =>
+        reader.GetValue(at) ?? (Formulas is not null && Formulas.TryGet(reader.Name, _row, at, out object result) ? result : null);
 
     public IReadOnlyList<string> Sheets { get; }
 
@@ -93,7 +104,7 @@ internal sealed class WorkbookTable : ITableSource
         int number = 0, hidden = 0, total = Math.Max(1, Math.Min(reader.RowCount, _lastRow));
         while (number < _lastRow && reader.Read())
         {
-            number++;
+            _row = ++number;
             if (number < layout.FirstDataRow || _range is { } range && number > range.LastRow)
                 continue;
             if ((number & 1023) == 0)
@@ -156,7 +167,7 @@ internal sealed class WorkbookTable : ITableSource
         int number = 0;
         while (rows.Count < HeadRows && number < _lastRow && reader.Read())
         {
-            number++;
+            _row = ++number;
             if ((number & 1023) == 0)
                 cancellationToken.ThrowIfCancellationRequested();
             if (_range is { } range && (number < range.FirstRow || number > range.LastRow))
@@ -171,7 +182,7 @@ internal sealed class WorkbookTable : ITableSource
             for (int c = 0; c < cells.Length; c++)
             {
                 cells[c] = TextOf(reader, c + Offset);
-                written[c] = reader.GetValue(c + Offset) is string s ? s : "";
+                written[c] = ValueAt(reader, c + Offset) is string s ? s : "";
             }
             rows.Add(new HeadRow(number, cells));
             texts.Add(new HeadRow(number, written));
@@ -188,7 +199,7 @@ internal sealed class WorkbookTable : ITableSource
     private int LastFilled(IExcelDataReader reader)
     {
         int last = Math.Min(Math.Min(reader.FieldCount - 1, _lastColumn), _range?.LastColumn ?? int.MaxValue);
-        while (last >= 0 && reader.GetValue(last) is null or "")
+        while (last >= 0 && ValueAt(reader, last) is null or "")
             last--;
         return last;
     }
@@ -198,14 +209,14 @@ internal sealed class WorkbookTable : ITableSource
         if (layout.HeaderRows.Count != 1 || last + 1 - layout.FirstColumn - Offset < layout.Names.Length)
             return false;
         for (int c = 0; c < layout.Names.Length; c++)
-            if (reader.GetValue(c + layout.FirstColumn + Offset) is var value && (value is not string text ? layout.Names[c].Length > 0 || value is not null : Blanks.OneLine(text, 200) != layout.Names[c]))
+            if (ValueAt(reader, c + layout.FirstColumn + Offset) is var value && (value is not string text ? layout.Names[c].Length > 0 || value is not null : Blanks.OneLine(text, 200) != layout.Names[c]))
                 return false;
         return true;
     }
 
     private void AddCell(RawColumn column, IExcelDataReader reader, int at, int row)
     {
-        switch (reader.GetValue(at))
+        switch (ValueAt(reader, at))
         {
             case double number:
                 column.AddNumber(number);
@@ -224,7 +235,7 @@ internal sealed class WorkbookTable : ITableSource
         }
     }
 
-    private static string TextOf(IExcelDataReader reader, int at) => reader.GetValue(at) switch
+    private string TextOf(IExcelDataReader reader, int at) => ValueAt(reader, at) switch
     {
         null => "",
         string text => text,

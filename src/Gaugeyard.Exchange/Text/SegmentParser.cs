@@ -22,6 +22,8 @@ internal sealed class SegmentParser(ReadPlan plan, char delimiter, string fileNa
 
     public (int First, int Count) Short { get; private set; }
 
+    public (int First, int Count) Blank { get; private set; }
+
     public SegmentParser Parse(Segment segment)
     {
         while (Columns.Count < _width)
@@ -61,7 +63,11 @@ internal sealed class SegmentParser(ReadPlan plan, char delimiter, string fileNa
                 for (int c = 1; c < n && blank; c++)
                     blank = row[c].Span.IsWhiteSpace();
                 if (blank)
+                {
+                    if (n > 1)
+                        Blank = (Blank.Count == 0 ? line : Blank.First, Blank.Count + 1);
                     continue;
+                }
             }
             if (_names.Length > 0 && _first < n && row[_first].Span.SequenceEqual(_names[0]) && n >= _first + _names.Length)
             {
@@ -100,7 +106,7 @@ internal sealed class SegmentParser(ReadPlan plan, char delimiter, string fileNa
             column.Clear();
         Rows = new RowMap();
         Repeats.Clear();
-        Ragged = Short = default;
+        Ragged = Short = Blank = default;
     }
 
     private void ParseForgiving(Segment segment)
@@ -109,8 +115,14 @@ internal sealed class SegmentParser(ReadPlan plan, char delimiter, string fileNa
         var fields = new List<string>();
         while (reader.Read(fields))
         {
-            if (reader.Line < _fromLine || fields.TrueForAll(string.IsNullOrWhiteSpace))
+            if (reader.Line < _fromLine)
                 continue;
+            if (fields.TrueForAll(string.IsNullOrWhiteSpace))
+            {
+                if (fields.Count > 1)
+                    Blank = (Blank.Count == 0 ? reader.Line : Blank.First, Blank.Count + 1);
+                continue;
+            }
             if (_names.Length > 0 && fields.Count >= _first + _names.Length && Enumerable.Range(0, _names.Length).All(c => Blanks.Trim(fields[_first + c]) == _names[c]))
             {
                 Repeats.Add(reader.Line);

@@ -260,7 +260,7 @@ internal sealed class TextTable : ITableSource
     {
         private List<RawColumn>? _columns;
         private readonly List<int> _repeats = [];
-        private (int First, int Count) _ragged, _short;
+        private (int First, int Count) _ragged, _short, _blank;
 
         public RowMap Rows { get; } = new();
 
@@ -291,6 +291,7 @@ internal sealed class TextTable : ITableSource
             _repeats.AddRange(segment.Repeats);
             _ragged = (_ragged.Count == 0 ? segment.Ragged.First : _ragged.First, _ragged.Count + segment.Ragged.Count);
             _short = (_short.Count == 0 ? segment.Short.First : _short.First, _short.Count + segment.Short.Count);
+            _blank = (_blank.Count == 0 ? segment.Blank.First : _blank.First, _blank.Count + segment.Blank.Count);
             if (Rows.Count > limits.Records || (long)Rows.Count * _columns.Count > limits.Cells)
                 throw new UnreadableFileException($"{fileName} has more than {limits.Records:N0} records or {limits.Cells:N0} cells, the limits for one file. Split it and upload the parts.");
             return copied;
@@ -303,6 +304,6 @@ internal sealed class TextTable : ITableSource
             Rows.Truncate(count);
         }
 
-        public RawTable ToTable(bool ended, double share) => new(_columns ?? [], Rows, ended, share, _repeats, _ragged, _short);
+        public RawTable ToTable(bool ended, double share) => new(_columns ?? [], Rows, ended, share, _repeats, _ragged, _short) { Blank = _blank };
     }
 }

@@ -314,6 +314,22 @@ public class MessTests
     }
 
     [Fact]
+    public void RowsOfSeparatorsAreLeftOutWithANote()
+    {
+        var table = Scratch.Read("run,city\nR1,8.1\n,\n\nR2,8.2\n , \n,\n");
+        Assert.Equal(2, table.Records);
+        Assert.Contains(table.Findings, f => f.Text == "row 3 has separators but no value, like 2 more rows; left out");
+    }
+
+    [Fact]
+    public void TimeZonesAreToldAndTheClockTimeKept()
+    {
+        var table = Scratch.Read("run,start\nR1,2031-04-07T08:10:00+02:00\nR2,2031-04-07T09:10:00Z\nR3,2031-04-07T10:10:00\n");
+        Assert.Equal(["2031-04-07T08:10:00", "2031-04-07T09:10:00", "2031-04-07T10:10:00"], table.Texts("start"));
+        Assert.Contains(table.Findings, f => f.Column == "start" && f.Text.Contains("2 values carry a time zone", StringComparison.Ordinal));
+    }
+
+    [Fact]
     public void NoHeaderIsNoticed()
     {
         var table = Scratch.Read("1.5,2.5\n3,4\n5,6\n");

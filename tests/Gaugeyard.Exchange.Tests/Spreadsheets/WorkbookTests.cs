@@ -27,6 +27,19 @@ public class WorkbookTests
     }
 
     [Fact]
+    public void FormulasWithoutAResultAreCalculatedWithAFinding()
+    {
+        string rows = Sheet.Rows(["run", "fuel", "distance", "city"], ["R1", 8.0, 100], ["R2", 9.0, 120], ["R3", 7.5, 90])
+            .Replace("<c r=\"C2\"><v>100</v></c>", "<c r=\"C2\"><v>100</v></c><c r=\"D2\"><f>100*B2/C2</f></c>", StringComparison.Ordinal)
+            .Replace("<c r=\"C3\"><v>120</v></c>", "<c r=\"C3\"><v>120</v></c><c r=\"D3\"><f>100*B3/C3</f><v>7.5</v></c>", StringComparison.Ordinal)
+            .Replace("<c r=\"C4\"><v>90</v></c>", "<c r=\"C4\"><v>90</v></c><c r=\"D4\"><f>NOSUCHFUNCTION(B4)</f></c>", StringComparison.Ordinal);
+        var table = Scratch.Read(Sheet.Book(("Runs", rows)), name: "b.xlsx");
+        Assert.Equal([8, 7.5, double.NaN], table.Numbers("city"));
+        Assert.Contains(table.Findings, f => f.Text.Contains("calculated while reading", StringComparison.Ordinal));
+        Assert.Contains(table.Findings, f => f.Text.Contains("could not be calculated", StringComparison.Ordinal));
+    }
+
+    [Fact]
     public void The1904System()
     {
         string rows = Sheet.Rows(["run", "start", "date"], ["R1", new DateTime(2031, 4, 7), 46483], ["R2", new DateTime(2031, 4, 8), 46484]);
