@@ -32,11 +32,25 @@ public class WorkbookTests
         string rows = Sheet.Rows(["run", "fuel", "distance", "city"], ["R1", 8.0, 100], ["R2", 9.0, 120], ["R3", 7.5, 90])
             .Replace("<c r=\"C2\"><v>100</v></c>", "<c r=\"C2\"><v>100</v></c><c r=\"D2\"><f>100*B2/C2</f></c>", StringComparison.Ordinal)
             .Replace("<c r=\"C3\"><v>120</v></c>", "<c r=\"C3\"><v>120</v></c><c r=\"D3\"><f>100*B3/C3</f><v>7.5</v></c>", StringComparison.Ordinal)
-            .Replace("<c r=\"C4\"><v>90</v></c>", "<c r=\"C4\"><v>90</v></c><c r=\"D4\"><f>NOSUCHFUNCTION(B4)</f></c>", StringComparison.Ordinal);
+            .Replace("<c r=\"C4\"><v>90</v></c>", "<c r=\"C4\"><v>90</v></c><c r=\"D4\"><f>ROUND(B4/0,1)</f></c>", StringComparison.Ordinal);
         var table = Scratch.Read(Sheet.Book(("Runs", rows)), name: "b.xlsx");
         Assert.Equal([8, 7.5, double.NaN], table.Numbers("city"));
         Assert.Contains(table.Findings, f => f.Text.Contains("calculated while reading", StringComparison.Ordinal));
         Assert.Contains(table.Findings, f => f.Text.Contains("could not be calculated", StringComparison.Ordinal));
+    }
+
+    [Fact]
+    public void FormulasThatCouldRunAwayAreNotCalculated()
+    {
+        string rows = Sheet.Rows(["run", "city"], ["R1", 8.0], ["R2", 9.0]).Replace("</row>", "", StringComparison.Ordinal).Replace("<row r=\"2\">", "</row><row r=\"2\">", StringComparison.Ordinal)
+            .Replace("<row r=\"3\">", "<c r=\"C2\"><f>REPT(B2,999999999)</f></c><c r=\"D2\"><f>B2*2</f></c></row><row r=\"3\">", StringComparison.Ordinal) + "</row>";
+        var table = Scratch.Read(Sheet.Book(("Runs", rows)), name: "b.xlsx");
+        Assert.Contains(table.Findings, f => f.Text.StartsWith("2 formulas", StringComparison.Ordinal) && f.Text.Contains("could not be calculated", StringComparison.Ordinal));
+        const long Never = 1L << 40;
+        Assert.Equal(90, Exchange.Spreadsheets.FormulaResults.RangeCells("SUM(A1:C30)/2"));
+        Assert.Equal(0, Exchange.Spreadsheets.FormulaResults.RangeCells("100*$B$2/C2"));
+        foreach (string formula in new[] { "SUM(A:A)", "SUM(1:9)", "A1&A1", "\"x\"", "INDIRECT(A1)", "OFFSET(A1,1,1)", new string('(', 2000) })
+            Assert.True(Exchange.Spreadsheets.FormulaResults.RangeCells(formula) > Never, formula);
     }
 
     [Fact]
