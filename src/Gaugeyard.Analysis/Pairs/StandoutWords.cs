@@ -21,7 +21,7 @@ internal static class StandoutWords
             string? unit = units.GetValueOrDefault(c.Column);
             int decimals = Say.DecimalsFor(Math.Abs(c.Value - c.Expected));
             if (c.WouldBe is { } wouldBe)
-                return $"{c.Column} {Say.With(c.Value, Written(c.Value), unit)} would fit as {Say.With(wouldBe, Math.Max(Written(c.Value), Say.DecimalsFor(wouldBe)), unit)}: {c.Suspicion}";
+                return $"{c.Column} {Say.With(c.Value, Written(c.Value), unit)} would fit as {Say.With(wouldBe, Say.DecimalsFor(wouldBe / 10), unit)}: {c.Suspicion}";
             double off = c.Value - c.Expected;
             return $"{c.Column} {Say.With(Math.Abs(off), decimals, unit)} {(off > 0 ? "above" : "below")} {like} ({Say.Number(c.Value, decimals)}, expected {Say.Number(c.Expected, decimals)})";
         })) + (cells.Count > 3 ? $"; and {cells.Count - 3} more" : "");

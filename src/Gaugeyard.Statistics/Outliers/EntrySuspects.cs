@@ -55,7 +55,9 @@ public static class EntrySuspects
         double closest = Near * spread;
         void Try(EntrySlip slip, double wouldBe, string? unit = null, double handicap = 0)
         {
-            double off = Math.Abs(wouldBe - expected) + handicap * spread;
+            // a metric unit differs by a power of ten: the unit is then the better reason
+            bool same = slip == EntrySlip.OtherUnit && best is not null && Math.Abs(wouldBe - best.WouldBe) <= 1e-9 * Math.Abs(wouldBe);
+            double off = same ? Math.BitDecrement(closest) : Math.Abs(wouldBe - expected) + handicap * spread;
             if (double.IsFinite(wouldBe) && wouldBe != value && off < closest)
             {
                 closest = off;

@@ -27,6 +27,14 @@ public sealed class EntrySuspectsTests
     }
 
     [Fact]
+    public void A_unit_that_differs_by_a_power_of_ten_is_named_rather_than_the_decimal()
+    {
+        UnitReading[] bar = [new("bar", v => v * 100), new("psi", v => v * 6.894757293168361)];
+        Assert.Equal((EntrySlip.OtherUnit, "bar"), (EntrySuspects.Find(2.49, 245, 15, bar)!.Slip, EntrySuspects.Find(2.49, 245, 15, bar)!.Unit));
+        Assert.Equal("psi", EntrySuspects.Find(35.5, 245, 15, bar)!.Unit);
+    }
+
+    [Fact]
     public void Digits_that_changed_places_are_named_only_when_they_fit_well()
     {
         var s = EntrySuspects.Find(9120, 1935, 60)!;
