@@ -28,7 +28,7 @@ internal static class Honesty
                 int repeat = job / folds, fold = job % folds;
                 var part = Folds(vehicles, folds, seed, repeat);
                 int[] train = [.. Rows(i => part[selection.Vehicles[i]] != fold)], test = [.. Rows(i => part[selection.Vehicles[i]] == fold)];
-                var path = selection.Choose(selection.Data.At(train), [.. train.Select(i => selection.Y[i])], [.. train.Select(i => selection.Vehicles[i])], out _, work.Cancel);
+                var path = selection.Choose(selection.Data.At(train), [.. train.Select(i => selection.Y[i])], [.. train.Select(i => selection.Vehicles[i])], work.Cancel);
                 double[] a = selection.HeldOutErrors(path.Chosen, train, test), b = selection.HeldOutErrors(all, train, test);
                 lock (gate)
                 {
@@ -62,7 +62,7 @@ internal static class Honesty
                 double[] y = [.. rows.Select(i => selection.Y[i])];
                 if (y.All(v => v == y[0]))
                     return;
-                var path = selection.Choose(selection.Data.At([.. rows]), y, [.. drawn], out _, work.Cancel);
+                var path = selection.Choose(selection.Data.At([.. rows]), y, [.. drawn], work.Cancel);
                 foreach (int t in path.Chosen)
                     Interlocked.Increment(ref counts[t]);
                 work.Say(0.45 + 0.5 * Interlocked.Increment(ref done) / resamples, "drawing the vehicles anew");

@@ -9,6 +9,7 @@ internal sealed class Selection
     private readonly IReadOnlyList<TermSpec> _specs;
     private readonly StepwiseOptions _options;
     private readonly IReadOnlyList<int>[] _parents;
+    private MixedFit? _mixed;
 
     public Selection(Sample sample, IReadOnlyList<TermSpec> specs, double[] y, StepwiseOptions options, double confidence)
     {
@@ -41,22 +42,22 @@ internal sealed class Selection
     /// <summary>Chooses on all records.</summary>
     public SelectionPath Choose(CancellationToken cancel)
     {
-        var path = Choose(Data, Y, Vehicles, out bool transformed, cancel);
-        Transformed = transformed;
-        return path;
+        // the components are estimated once on all records and then held fixed, in resamples too
+        if (Repeats)
+            _mixed = MixedModel.Of([.. Design.Of(_specs, Data).Columns.Select(c => c.Values)], Y, Vehicles, cancel);
+        Transformed = _mixed is { Between: > 0 };
+        return Choose(Data, Y, Vehicles, cancel);
     }
 
     /// <summary>Chooses on other records with the same settings.</summary>
-    public SelectionPath Choose(DesignData data, double[] y, int[] vehicles, out bool transformed, CancellationToken cancel)
+    public SelectionPath Choose(DesignData data, double[] y, int[] vehicles, CancellationToken cancel)
     {
         var design = Design.Of(_specs, data);
         var columns = design.Columns.Select(c => (c.Term, c.Values)).ToArray();
         double[]? intercept = null;
         double[] target = y;
-        transformed = false;
-        if (Repeats && MixedModel.Of([.. columns.Select(c => c.Values)], y, vehicles, cancel) is { Between: > 0 } mixed)
+        if (_mixed is { Between: > 0 } mixed)
         {
-            transformed = true;
             double[] shares = FullerBattese.Shares(vehicles, mixed.Between, mixed.Within);
             columns = [.. columns.Select(c => (c.Term, FullerBattese.Transform(c.Values, vehicles, shares)))];
             target = FullerBattese.Transform(y, vehicles, shares);

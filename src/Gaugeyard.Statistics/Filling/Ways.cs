@@ -78,8 +78,7 @@ public sealed class StepwiseWay : IFillWay
 }
 
 /// <summary>
-/// Local regression on up to three number predictors that predict best; category predictors enter as additive effects that are
-/// estimated in turn with the surface (backfitting, Buja, Hastie and Tibshirani 1989, Annals of Statistics 17:453-510).
+/// Local regression on up to three number predictors that predict best; the effects of category predictors are taken out first.
 /// </summary>
 public sealed class LocalRegressionWay : IFillWay
 {
@@ -95,9 +94,8 @@ public sealed class LocalRegressionWay : IFillWay
         if (numbers.Length == 0)
             return RegressionWay.Linear(data, data.Terms, rows, cancel);
         double[][] x = [.. numbers.Select(n => rows.Select(i => data.Predictors.Numbers[n][i]).ToArray())];
-        return Backfitted.Train(data, rows, y =>
+        return PartialResiduals.Train(data, rows, y =>
         {
-            // the widest span that helps is kept simple: local planes over three quarters of the records
             var fit = LocalRegression.Of(x, y, new LocalRegressionOptions { Degree = 1, Span = 0.6 }, cancel: cancel).Fit;
             return fit is null ? null : i => fit.Evaluate((ReadOnlySpan<double>)(double[])[.. numbers.Select(n => data.Predictors.Numbers[n][i])]);
         }, cancel);
@@ -132,7 +130,7 @@ public sealed class SmoothingSplineWay : IFillWay
         if (numbers.Length == 0)
             return RegressionWay.Linear(data, data.Terms, rows, cancel);
         double[] values = data.Predictors.Numbers[numbers[0]], x = [.. rows.Select(i => values[i])];
-        return Backfitted.Train(data, rows, y =>
+        return PartialResiduals.Train(data, rows, y =>
         {
             if (SmoothingSpline.Of(x, y).Problem is not { } problem)
                 return null;
@@ -192,61 +190,27 @@ public sealed class VehicleCarryWay : IFillWay
     }
 }
 
-/// <summary>A smooth part and additive category effects, estimated in turn until they settle.</summary>
-internal static class Backfitted
+/// <summary>
+/// A smooth part for what category effects leave over. The effects are those of a regression on the categories and on the
+/// numbers with their squares (partial residuals; Speckman 1988, JRSS B 50:413-436, in its simplest form).
+/// </summary>
+internal static class PartialResiduals
 {
-    private const int Rounds = 6;
-
     public static IFillFit Train(FillData data, int[] rows, Func<double[], Func<int, double>?> smooth, CancellationToken cancel)
     {
-        string[] categories = data.Categories;
-        var effects = categories.Select(c => new double[data.Predictors.Categories[c].Levels.Length]).ToArray();
-        var seen = categories.Select(c => new bool[data.Predictors.Categories[c].Levels.Length]).ToArray();
-        for (int k = 0; k < categories.Length; k++)
-            foreach (int i in rows)
-                seen[k][data.Predictors.Categories[categories[k]].Codes[i]] = true;
-        Func<int, double>? part = null;
-        for (int round = 0; round < (categories.Length == 0 ? 1 : Rounds); round++)
-        {
-            cancel.ThrowIfCancellationRequested();
-            part = smooth([.. rows.Select(i => data.Y[i] - Offset(i))]);
-            if (part is null)
-                return RegressionWay.Linear(data, data.Terms, rows, cancel);
-            double[] rest = [.. rows.Select(i => data.Y[i] - part(i))];
-            for (int k = 0; k < categories.Length; k++)
-            {
-                int[] codes = data.Predictors.Categories[categories[k]].Codes;
-                var sums = new double[effects[k].Length];
-                var counts = new int[effects[k].Length];
-                for (int r = 0; r < rows.Length; r++)
-                {
-                    double other = Offset(rows[r]) - effects[k][codes[rows[r]]];
-                    if (double.IsNaN(rest[r]))
-                        continue;
-                    sums[codes[rows[r]]] += rest[r] - other;
-                    counts[codes[rows[r]]]++;
-                }
-                for (int l = 0; l < sums.Length; l++)
-                    effects[k][l] = counts[l] == 0 ? 0 : sums[l] / counts[l];
-            }
-        }
-        return new GroupMeanWay.Fit(i =>
-        {
-            for (int k = 0; k < categories.Length; k++)
-            {
-                int code = data.Predictors.Categories[categories[k]].Codes[i];
-                if (code < 0 || !seen[k][code])
-                    return double.NaN;
-            }
-            return part!(i) + Offset(i);
-        });
-
-        double Offset(int i)
-        {
-            double sum = 0;
-            for (int k = 0; k < categories.Length; k++)
-                sum += effects[k][data.Predictors.Categories[categories[k]].Codes[i]];
-            return sum;
-        }
+        if (data.Categories.Length == 0)
+            return smooth([.. rows.Select(i => data.Y[i])]) is { } plain ? new GroupMeanWay.Fit(plain) : RegressionWay.Linear(data, data.Terms, rows, cancel);
+        List<TermSpec> categories = [.. data.Terms.Where(t => t.Kind == TermKind.Category)], numbers = [.. data.Terms.Where(t => t.Kind == TermKind.Number)];
+        List<TermSpec> terms = [.. categories, .. numbers, .. numbers.Select(t => t with { Label = t.Label + "^2", Power = 2 })];
+        var design = Design.Of(terms, data.Predictors.At(rows));
+        var fit = LinearFit.Of(design.Columns, [.. rows.Select(i => data.Y[i])], cancel);
+        if (fit.Reason is not null)
+            return RegressionWay.Linear(data, data.Terms, rows, cancel);
+        int[] own = [.. Enumerable.Range(0, fit.Kept.Length).Where(k => design.Columns[fit.Kept[k]].Term < categories.Count)];
+        double Effect(double[] row) => own.Sum(k => fit.Beta[k] * row[fit.Kept[k]]);
+        double[] Row(int i) => design.RowOf(data.Predictors, i).Row ?? [];
+        if (smooth([.. rows.Select((i, r) => data.Y[i] - own.Sum(k => fit.Beta[k] * design.Columns[fit.Kept[k]].Values[r]))]) is not { } part)
+            return RegressionWay.Linear(data, data.Terms, rows, cancel);
+        return new GroupMeanWay.Fit(i => Row(i) is { Length: > 0 } row ? part(i) + Effect(row) : double.NaN);
     }
 }

@@ -112,7 +112,7 @@ public static class MixedModel
             return ((n - p) * Math.Log(squares) + logs + logDet, beta, squares);
         }
 
-        const int Grid = 60;
+        const int Grid = 24;
         int best = 0;
         double bestValue = double.PositiveInfinity;
         for (int i = 0; i < Grid; i++)

@@ -80,9 +80,11 @@ public static class Stepwise
         while (true)
         {
             cancel.ThrowIfCancellationRequested();
-            var (rss, df) = reduced.Fit(model);
+            var state = reduced.At(model);
+            var (rss, df) = (state.Rss, state.Df);
             double value = Value(options.Criterion, reduced.Count, rss, df);
             var candidates = new List<StepCandidate>();
+            var freedom = new Dictionary<StepCandidate, int>();
             for (int t = 0; t < termCount; t++)
             {
                 bool adds = !model.Contains(t);
@@ -91,16 +93,18 @@ public static class Stepwise
                 // a product enters after its parents, and a parent leaves after its products
                 if (adds ? parents[t].Any(p => !model.Contains(p)) : model.Any(m => parents[m].Contains(t)))
                     continue;
-                var (r, d) = reduced.Fit(adds ? [.. model, t] : [.. model.Where(m => m != t)]);
-                candidates.Add(new StepCandidate(t, adds, options.Criterion == SelectionCriterion.PartialF
+                var (r, d) = adds ? state.With(t) : state.Without(t);
+                var candidate = new StepCandidate(t, adds, options.Criterion == SelectionCriterion.PartialF
                     ? PartialP(adds ? rss : r, adds ? df : d, adds ? r : rss, adds ? d : df, reduced.Count)
-                    : Value(options.Criterion, reduced.Count, r, d)));
+                    : Value(options.Criterion, reduced.Count, r, d));
+                candidates.Add(candidate);
+                freedom[candidate] = d;
             }
             steps.Add(new SelectionStep(moved, added, value, candidates));
             // a perfect fit cannot be improved
             if (!seen.Add(string.Join(',', model.Order())) || (double.IsNegativeInfinity(value) && options.Direction != SelectionDirection.Backward))
                 break;
-            var best = options.Criterion == SelectionCriterion.PartialF ? BestByP(candidates, options) : BestByCriterion(candidates, value, reduced, model);
+            var best = options.Criterion == SelectionCriterion.PartialF ? BestByP(candidates, options) : BestByCriterion(candidates, value, freedom);
             if (best is null)
                 break;
             (moved, added) = (best.Term, best.Adds);
@@ -112,7 +116,7 @@ public static class Stepwise
         return new SelectionPath(steps, [.. model.Order()]);
     }
 
-    private static StepCandidate? BestByCriterion(List<StepCandidate> candidates, double value, Reduced reduced, HashSet<int> model)
+    private static StepCandidate? BestByCriterion(List<StepCandidate> candidates, double value, Dictionary<StepCandidate, int> freedom)
     {
         StepCandidate? best = null;
         int bestDf = 0;
@@ -120,7 +124,7 @@ public static class Stepwise
         {
             if (!(c.Value < value - Stop))
                 continue;
-            int df = reduced.Fit(c.Adds ? [.. model, c.Term] : [.. model.Where(m => m != c.Term)]).Df;
+            int df = freedom[c];
             double tie = 1e-9 * Math.Max(1, Math.Abs(c.Value));
             // ties go to fewer degrees of freedom, then to the user's order
             if (best is null || c.Value < best.Value - tie || (Math.Abs(c.Value - best.Value) <= tie && df < bestDf))
@@ -166,7 +170,6 @@ public static class Stepwise
         private readonly double[] _y;
         private readonly double _floor;
         private readonly bool _ownIntercept;
-        private readonly Dictionary<string, (double, int)> _fits = [];
 
         public Reduced(IReadOnlyList<(int Term, double[] Values)> columns, double[] y, double[]? intercept, CancellationToken cancel)
         {
@@ -206,30 +209,99 @@ public static class Stepwise
 
         public int Count { get; }
 
-        /// <summary>Residual sum of squares and number of coefficients (with the intercept) of the model with these terms.</summary>
-        public (double Rss, int Df) Fit(IReadOnlyCollection<int> model)
+        /// <summary>The model with these terms, from which every neighbour is judged without a fit of its own.</summary>
+        public State At(IReadOnlyCollection<int> model)
         {
-            string key = string.Join(',', model.Order());
-            if (_fits.TryGetValue(key, out var known))
-                return known;
-            var chosen = new List<double[]>();
+            var inside = new List<int>();
+            var outside = new List<int>();
             for (int j = 0; j < _columns.Length; j++)
-                if (_terms[j] < 0 || model.Contains(_terms[j]))
-                    chosen.Add((double[])_columns[j].Clone());
-            double[] rest = (double[])_y.Clone();
-            double tail = rest[^1];
-            double[] head = rest[..^1];
-            int rank = 0;
-            if (chosen.Count > 0 && head.Length > 0)
+                (_terms[j] < 0 || model.Contains(_terms[j]) ? inside : outside).Add(j);
+            var qr = new HouseholderQr([.. inside.Select(j => (double[])_columns[j].Clone())], 1e-9);
+            double[] y = _y[..^1];
+            qr.ApplyTransposed(y);
+            var rest = new Dictionary<int, List<double[]>>();
+            foreach (int j in outside)
             {
-                var qr = new HouseholderQr([.. chosen], 1e-9);
-                qr.ApplyTransposed(head);
-                rank = qr.Rank;
+                double[] c = (double[])_columns[j].Clone();
+                qr.ApplyTransposed(c);
+                if (!rest.TryGetValue(_terms[j], out var list))
+                    rest[_terms[j]] = list = [];
+                list.Add(c[qr.Rank..]);
             }
-            double rss = tail * tail;
-            for (int i = rank; i < head.Length; i++)
-                rss += head[i] * head[i];
-            return _fits[key] = (rss <= _floor ? 0 : rss, rank + (_ownIntercept ? 0 : 1));
+            double tail = _y[^1] * _y[^1];
+            return new State(this, qr, [.. qr.Kept.Select(k => _terms[inside[k]])], y, rest, tail);
+        }
+
+        /// <summary>Sum of squares that counts as zero.</summary>
+        internal double Floor => _floor;
+
+        /// <summary>1 when the intercept was taken out by centring and is not among the columns.</summary>
+        internal int HiddenIntercept => _ownIntercept ? 0 : 1;
+
+        /// <summary>Residual sum of squares and number of coefficients of one model and of its neighbours.</summary>
+        internal sealed class State
+        {
+            private readonly Reduced _of;
+            private readonly HouseholderQr _qr;
+            private readonly int[] _termOf;
+            private readonly double[] _y;
+            private readonly Dictionary<int, List<double[]>> _rest;
+            private double[][]? _inverse;
+            private double[]? _beta;
+
+            public State(Reduced of, HouseholderQr qr, int[] termOf, double[] y, Dictionary<int, List<double[]>> rest, double tail)
+            {
+                (_of, _qr, _termOf, _y, _rest) = (of, qr, termOf, y, rest);
+                double rss = tail;
+                for (int i = qr.Rank; i < y.Length; i++)
+                    rss += y[i] * y[i];
+                Rss = rss <= of.Floor ? 0 : rss;
+            }
+
+            public double Rss { get; }
+
+            public int Df => _qr.Rank + _of.HiddenIntercept;
+
+            /// <summary>With one more term: the part of the residual that its columns, cleared of the model, explain.</summary>
+            public (double Rss, int Df) With(int term)
+            {
+                if (!_rest.TryGetValue(term, out var columns))
+                    return (Rss, Df);
+                var qr = new HouseholderQr([.. columns.Select(c => (double[])c.Clone())], 1e-9);
+                double[] y = _y[_qr.Rank..];
+                qr.ApplyTransposed(y);
+                double gain = 0;
+                for (int i = 0; i < qr.Rank; i++)
+                    gain += y[i] * y[i];
+                double rss = Rss - gain;
+                return (rss <= _of.Floor ? 0 : rss, Df + qr.Rank);
+            }
+
+            /// <summary>With one term less: its coefficients weighed by the inverse of their covariance.</summary>
+            public (double Rss, int Df) Without(int term)
+            {
+                int[] own = [.. Enumerable.Range(0, _qr.Rank).Where(k => _termOf[k] == term)];
+                if (own.Length == 0)
+                    return (Rss, Df);
+                _beta ??= _qr.Solve(_y);
+                // rows of R^-1, of which the term's give the covariance of its coefficients
+                if (_inverse is null)
+                {
+                    _inverse = new double[_qr.Rank][];
+                    for (int k = 0; k < _qr.Rank; k++)
+                    {
+                        var unit = new double[_qr.Rank];
+                        unit[k] = 1;
+                        _inverse[k] = _qr.SolveTransposed(unit);
+                    }
+                }
+                var qr = new HouseholderQr([.. own.Select(k => (double[])_inverse[k].Clone())], 0);
+                double[] z = qr.SolveTransposed([.. own.Select(k => _beta[k])]);
+                double loss = 0;
+                foreach (double v in z)
+                    loss += v * v;
+                return (Rss + loss, Df - own.Length);
+            }
         }
 
         private static double[] Unit(double[] values, double centre)
