@@ -41,6 +41,11 @@ public sealed record FillPlanQuestion : Question<FillPlanAnswer>
                 refused.Add(new RefusedCell(record, "nothing like it was tested") { Label = label });
                 continue;
             }
+            if (setup.Positive && x.Value <= 0)
+            {
+                refused.Add(new RefusedCell(record, $"the estimate would not be positive, as every known {Reading} is") { Label = label });
+                continue;
+            }
             var (value, low, high) = setup.Back(x.Value, x.Low, x.High);
             filled.Add(new PlannedCell(record, value, low, high) { Label = label, Vehicle = setup.Sample.VehicleNames?[setup.Sample.VehicleOf![i]], Claim = x.Claim == IntervalClaim.Proved ? "distribution-free" : "assumes normal errors" });
         }

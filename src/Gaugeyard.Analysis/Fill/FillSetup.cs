@@ -47,6 +47,9 @@ internal sealed class FillSetup
 
     public bool Economy => _economy is not null;
 
+    /// <summary>Whether every known reading is above zero, so that an estimate must be too.</summary>
+    public bool Positive { get; private init; }
+
     public static FillSetup Of(RevisionContent content, Question question, string reading, IReadOnlyList<string> predictors)
     {
         if (predictors.Count == 0)
@@ -74,14 +77,14 @@ internal sealed class FillSetup
         int vehicles = known.Select(i => fill.Vehicles[i]).Distinct().Count();
         if (vehicles < 3)
             throw new CannotAnswerException($"Only {Say.Count(vehicles, "vehicle")} {(vehicles == 1 ? "has" : "have")} known readings; the error of an estimate for another vehicle cannot be measured. Test at least 3, better 19, vehicles.");
-        return new FillSetup(sample, fill, known, missing, economy);
+        return new FillSetup(sample, fill, known, missing, economy) { Positive = known.All(i => y[i] > 0) };
     }
 
     /// <summary>Turns modelled values back into the column's own unit; the ends of an interval swap for economy.</summary>
     public (double Value, double Low, double High) Back(double value, double low, double high)
     {
         if (_economy is null)
-            return (value, low, high);
+            return (value, Positive && value > 0 ? Math.Max(low, 0) : low, high);
         // consumption cannot reach zero: the open end stays finite
         double least = 0.02 * Math.Abs(value);
         return (_economy.ToBase / Math.Max(value, 1e-12), _economy.ToBase / Math.Max(high, least), _economy.ToBase / Math.Max(low, least));

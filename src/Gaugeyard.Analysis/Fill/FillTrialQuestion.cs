@@ -79,7 +79,8 @@ public sealed record FillTrialQuestion : Question<FillTrialAnswer>
     private static HiddenShown Show(FillSetup setup, HiddenReading h)
     {
         double truth = setup.Back(h.Truth, h.Truth, h.Truth).Value;
-        if (h.Refused)
+        // an estimate that is not positive is refused for a reading that always is
+        if (h.Refused || (setup.Positive && h.Estimate <= 0))
             return new HiddenShown(setup.Sample.RecordAt(h.Row), truth, null, null, null) { Row = h.Row };
         var (value, low, high) = setup.Back(h.Estimate, h.Low, h.High);
         return new HiddenShown(setup.Sample.RecordAt(h.Row), truth, value, low, high) { Row = h.Row };
