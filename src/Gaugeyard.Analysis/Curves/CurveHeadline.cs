@@ -42,6 +42,8 @@ internal static class CurveHeadline
         foreach (int turn in new[] { lowest, highest }.OrderByDescending(g => Math.Min(Math.Abs(Value(result, g) - Value(result, first)), Math.Abs(Value(result, g) - Value(result, last)))))
             if (Math.Min(Math.Abs(Value(result, turn) - Value(result, first)), Math.Abs(Value(result, turn) - Value(result, last))) > Math.Max(0.2 * sweep, 2 * noise))
                 return $"{reading} {Leg(first, turn)}, then {Leg(turn, last)}{line}.";
+        if (Between(result, first, last) is { Low: { } from, High: { } to } whole && from < 0 && to > 0)
+            return $"{reading} {(whole.Difference < 0 ? "falls" : "rises")} about {Say.With(Math.Abs(whole.Difference), decimals, unit)} {Where(first, last)}, but {Say.Count(data.UnitCount, data.UnitWord[..^1])} cannot tell this from no change (between {Say.With(from, decimals, unit)} and {(to > 0 ? "+" : "")}{Say.With(to, decimals, unit)}).";
         string only = Level(result, known, sweep, noise) is { } level ? $"{Leg(first, level)}, then stays level" : Leg(first, last);
         return $"{reading} {only}{line}.";
     }
