@@ -160,7 +160,8 @@ internal static class TableScan
             readings.Where(r => r.Marks.Count > 0).ToDictionary(r => r.Column.Name, r => (IReadOnlyDictionary<int, CellMark>)r.Marks, StringComparer.Ordinal),
             setAside,
             findings,
-            reading) { ReadAs = Resolved(reading, choices) };
+            reading)
+        { ReadAs = Resolved(reading, choices) };
     }
 
     // what was detected, written as choices: the ledger keeps it

@@ -45,7 +45,11 @@ public sealed partial class Pairs : RunSetPage
         if (_readings.Count > 0)
             await _standouts.AskAsync(Id, new StandoutsQuestion
             {
-                Revision = _content.Revision, Slice = Desk.Slice, Readings = _readings, Among = _among, Cut = double.Parse(_cut, System.Globalization.CultureInfo.InvariantCulture),
+                Revision = _content.Revision,
+                Slice = Desk.Slice,
+                Readings = _readings,
+                Among = _among,
+                Cut = double.Parse(_cut, System.Globalization.CultureInfo.InvariantCulture),
             }, _content.Revision);
     }
 

@@ -1,6 +1,6 @@
-using Xunit;
 using System.Text;
 using Gaugeyard.Records.Columns;
+using Xunit;
 
 namespace Gaugeyard.Exchange.Tests.Text;
 
