@@ -16,12 +16,15 @@ public abstract class RunSetPage : ComponentBase, IDisposable
 {
     private readonly List<IDisposable> _askings = [];
     private int? _revision;
+    private string _address = "";
     private bool _gone;
 
     /// <summary>Run set of the address.</summary>
     [Parameter] public string Id { get; set; } = "";
 
     [Inject] protected Desk Desk { get; set; } = default!;
+
+    [Inject] private NavigationManager Navigation { get; set; } = default!;
 
     [Inject] protected Answerer Answerer { get; set; } = default!;
 
@@ -54,7 +57,7 @@ public abstract class RunSetPage : ComponentBase, IDisposable
     protected override async Task OnParametersSetAsync()
     {
         Missing = await Desk.LoadAsync() is null;
-        _revision = RunSet?.Revision;
+        (_revision, _address) = (RunSet?.Revision, Navigation.Uri);
         // the first, static rendering shows the frame at once; questions are put when the window is live
         if (!Missing && RendererInfo.IsInteractive)
             await AskAsync();
@@ -62,9 +65,11 @@ public abstract class RunSetPage : ComponentBase, IDisposable
 
     private void DeskChanged()
     {
-        if (_gone || RunSet is null || RunSet.Revision == _revision)
+        // a change of the query alone sets no parameter of the page, so the address is watched; another path is another page
+        string address = Navigation.Uri;
+        if (_gone || RunSet is null || _address.Length == 0 || (RunSet.Revision == _revision && address == _address) || new Uri(address).AbsolutePath != new Uri(_address).AbsolutePath)
             return;
-        _revision = RunSet.Revision;
+        (_revision, _address) = (RunSet.Revision, address);
         _ = InvokeAsync(async () =>
         {
             await AskAsync();
