@@ -217,6 +217,8 @@ class Matrix {
     const { readings } = this.points;
     const pick = make("select", {}, ...readings.map((name, k) => make("option", { value: k, textContent: name })));
     const from = make("input", { type: "number", step: "any" }), to = make("input", { type: "number", step: "any" });
+    // a label around a list of choices would read all of them out
+    for (const [e, name] of [[pick, "Reading of the range"], [from, "Range from"], [to, "Range to"]]) e.setAttribute("aria-label", name);
     const hint = () => { const a = this.axes[pick.value]; from.placeholder = say(a.min); to.placeholder = say(a.max); };
     pick.addEventListener("change", hint);
     hint();

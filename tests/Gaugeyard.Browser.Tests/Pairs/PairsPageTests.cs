@@ -43,8 +43,8 @@ public sealed class PairsPageTests(PortalInBrowser portal)
         await page.Keyboard.PressAsync("ArrowDown");
         await Assertions.Expect(matrix).ToHaveAttributeAsync("aria-label", new System.Text.RegularExpressions.Regex("^Test mass against City consumption"));
         await page.GetByText("Select by range").ClickAsync();
-        await page.GetByLabel("Reading", new() { Exact = true }).SelectOptionAsync("Test mass");
-        await page.GetByLabel("from", new() { Exact = true }).FillAsync("2500");
+        await page.GetByLabel("Reading of the range").SelectOptionAsync("Test mass");
+        await page.GetByLabel("Range from").FillAsync("2500");
         await page.GetByRole(AriaRole.Button, new() { Name = "Select", Exact = true }).ClickAsync();
         await page.GetByRole(AriaRole.Heading, new() { NameRegex = new("of 1,965 records selected") }).WaitForAsync();
         await page.GetByRole(AriaRole.Button, new() { Name = "Make these a slice" }).ClickAsync();
