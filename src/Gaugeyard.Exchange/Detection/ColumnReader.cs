@@ -121,7 +121,7 @@ internal sealed class ColumnReader
             lines |= _trimmed[i].Contains('\n', StringComparison.Ordinal);
         }
         int count = distinct.Count + numbers.DistinctPlain;
-        string counts = $"{count:N0} distinct {(count == 1 ? "text" : "texts")} in {known:N0} values";
+        string counts = $"{count:N0} distinct {(count == 1 ? "text" : "texts")} in {known:N0} {(known == 1 ? "value" : "values")}";
         if (numbers.DistinctPlain == 0 && Ladders.YesNo(distinct) is not null)
         {
             why = $"the values are {string.Join(", ", distinct.Order(StringComparer.Ordinal).Select(d => $"'{d}'"))}";
@@ -812,7 +812,7 @@ internal sealed class ColumnReader
                 string sure = order == DateOrder.DayFirst ? "day first" : "month first";
                 int one = Math.Max(_day, _month);
                 if (settled)
-                    how = one > 0 ? $"; {one:N0} of them only make a date with {sure}" : "; points between the parts mean day first";
+                    how = one > 0 ? $"; {one:N0} of them only {(one == 1 ? "makes" : "make")} a date with {sure}" : "; points between the parts mean day first";
                 else
                 {
                     string text = FirstEither();

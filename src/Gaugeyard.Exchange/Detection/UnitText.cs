@@ -137,6 +137,11 @@ internal static class UnitText
             return (listed, $"the heading ends in {text[(comma + 2)..]}");
         if (text.LastIndexOf(" in ", StringComparison.Ordinal) is > 0 and var within && Find(text[(within + 4)..]) is { } said)
             return (said, $"the heading ends in {text[(within + 4)..]}");
+        if (text.Contains('/', StringComparison.Ordinal) && Find(text) is { } whole)
+            return (whole, "the heading is a unit");
+        // "Distance km"; a bar may also be what holds a trailer
+        if (text.LastIndexOf(' ') is > 0 and var blank && text.Length - blank > 2 && Unit.Find(text[(blank + 1)..]) is { Code: not "bar" } trailing)
+            return (trailing.Code, $"the heading ends in {text[(blank + 1)..]}");
         var words = NameWords.Split(text);
         string joined = string.Join('_', words);
         if (words.Contains("mpg"))
