@@ -48,7 +48,7 @@ public sealed class PairsPageTests(PortalInBrowser portal)
         await page.GetByRole(AriaRole.Button, new() { Name = "Select", Exact = true }).ClickAsync();
         await page.GetByRole(AriaRole.Heading, new() { NameRegex = new("of 1,965 records selected") }).WaitForAsync();
         await page.GetByRole(AriaRole.Button, new() { Name = "Make these a slice" }).ClickAsync();
-        await page.WaitForURLAsync(new System.Text.RegularExpressions.Regex("slice="));
+        await Assertions.Expect(page).ToHaveURLAsync(new System.Text.RegularExpressions.Regex("slice="), new() { Timeout = 60_000 });
         Assert.Contains("2500", Uri.UnescapeDataString(page.Url), StringComparison.Ordinal);
     }
 
