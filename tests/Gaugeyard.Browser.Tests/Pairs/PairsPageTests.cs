@@ -30,7 +30,7 @@ public sealed class PairsPageTests(PortalInBrowser portal)
         Assert.Contains("two digits swapped", await item.InnerTextAsync(), StringComparison.Ordinal);
         await item.GetByRole(AriaRole.Button).ClickAsync();
         await page.GetByRole(AriaRole.Heading, new() { Name = "1 of 1,965 records selected" }).WaitForAsync();
-        await page.GetByRole(AriaRole.Region, new() { Name = "Selected records" }).GetByRole(AriaRole.Button, new() { Name = "439", Exact = true }).ClickAsync();
+        await page.Locator("section[aria-label='Selected records']").GetByRole(AriaRole.Button, new() { Name = "439", Exact = true }).ClickAsync();
         Assert.Contains("7,148", await page.GetByRole(AriaRole.Region, new() { Name = "Record 439" }).InnerTextAsync(), StringComparison.Ordinal);
     }
 
@@ -61,9 +61,9 @@ public sealed class PairsPageTests(PortalInBrowser portal)
         await page.Mouse.DownAsync();
         await page.Mouse.MoveAsync(box.X + box.Width * 0.8f, box.Y + box.Height * 0.3f, new() { Steps = 5 });
         await page.Mouse.UpAsync();
-        await page.GetByRole(AriaRole.Region, new() { Name = "Selected records" }).WaitForAsync();
+        await page.Locator("section[aria-label='Selected records']").WaitForAsync();
         await page.Locator("[aria-roledescription='scatter matrix']").PressAsync("Escape");
-        await Assertions.Expect(page.GetByRole(AriaRole.Region, new() { Name = "Selected records" })).ToHaveCountAsync(0);
+        await Assertions.Expect(page.Locator("section[aria-label='Selected records']")).ToHaveCountAsync(0);
     }
 
     [Fact]
