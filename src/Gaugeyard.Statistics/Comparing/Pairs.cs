@@ -1,6 +1,5 @@
 using Gaugeyard.Statistics.Describing;
 using Gaugeyard.Statistics.Numerics;
-using MathNet.Numerics;
 
 namespace Gaugeyard.Statistics.Comparing;
 
@@ -103,7 +102,9 @@ public static class PairComparisons
         double df = a.Count + b.Count - 2, sd = Math.Sqrt((a.M2 + b.M2) / df);
         if (!(sd > 0))
             return (double.NaN, double.NaN, double.NaN);
-        double j = Math.Exp(SpecialFunctions.GammaLn(df / 2) - SpecialFunctions.GammaLn((df - 1) / 2)) / Math.Sqrt(df / 2);
+        // Gamma(h) / (sqrt(h) Gamma(h - 1/2)) by the errors of Stirling's formula, which do not cancel for many records
+        double h = df / 2;
+        double j = Math.Exp(-(h - 1) * IncompleteIntegrals.LogOnePlus(-0.5 / h) - 0.5 + IncompleteIntegrals.StirlingError(h) - IncompleteIntegrals.StirlingError(h - 0.5));
         double g = j * (b.Mean - a.Mean) / sd;
         double se = Math.Sqrt((double)(a.Count + b.Count) / (a.Count * b.Count) + g * g / (2.0 * (a.Count + b.Count)));
         double z = Probability.NormalQuantile(0.5 + confidence / 2);

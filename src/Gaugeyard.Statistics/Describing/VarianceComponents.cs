@@ -63,41 +63,57 @@ public static class VarianceComponents
             return (n - 1) * Math.Log(squares) + logs + Math.Log(weights);
         }
 
+        // its slope in the ratio: the smoothness of a minimum hides half the digits of its place, a root of the slope shows all
+        double Slope(double ratio)
+        {
+            double weights = 0, squaredWeights = 0, mean = 0;
+            for (int k = 0; k < groups; k++)
+            {
+                double w = sizes[k] / (1 + sizes[k] * ratio);
+                weights += w;
+                squaredWeights += w * w;
+                mean += w * means[k];
+            }
+            mean /= weights;
+            double squares = within, fall = 0;
+            for (int k = 0; k < groups; k++)
+            {
+                double w = sizes[k] / (1 + sizes[k] * ratio), part = w * (means[k] - mean) * (means[k] - mean);
+                squares += part;
+                fall += w * part;
+            }
+            return weights - squaredWeights / weights - (n - 1) * fall / squares;
+        }
+
         if (within == 0)
         {
             double grand = Numerics.Sums.Mean(means);
             return new VarianceSplit(means.Sum(m => (m - grand) * (m - grand)) / (groups - 1), 0, 0);
         }
-        // grid on u = ratio / (1 + ratio), then golden section in the best bracket
-        int best = 0;
-        double bestValue = double.PositiveInfinity;
-        const int Grid = 200;
-        for (int i = 0; i < Grid; i++)
+        // every minimum of the criterion over ln ratio, by the sign of its slope; a ratio of 0 competes with them
+        double ratioAt = 0, lowest = Criterion(0, out _);
+        const double First = -27, Last = 50, GridStep = 0.25;
+        double left = First, leftSlope = Slope(Math.Exp(First));
+        for (double right = First + GridStep; right <= Last; right += GridStep)
         {
-            double u = i / (double)Grid, value = Criterion(u / (1 - u), out _);
-            if (value < bestValue)
-                (best, bestValue) = (i, value);
-        }
-        double a = Math.Max(0, best - 1) / (double)Grid, b = Math.Min(Grid - 0.001, best + 1) / Grid;
-        const double Golden = 0.3819660112501051;
-        double x = a + Golden * (b - a), y = b - Golden * (b - a), fx = Criterion(x / (1 - x), out _), fy = Criterion(y / (1 - y), out _);
-        for (int i = 0; i < 100 && b - a > 1e-14; i++)
-        {
-            if (fx <= fy)
+            double rightSlope = Slope(Math.Exp(right));
+            if (leftSlope < 0 && rightSlope >= 0)
             {
-                (b, y, fy) = (y, x, fx);
-                x = a + Golden * (b - a);
-                fx = Criterion(x / (1 - x), out _);
+                double a = left, b = right;
+                for (int i = 0; i < 60; i++)
+                {
+                    double middle = 0.5 * (a + b);
+                    if (Slope(Math.Exp(middle)) < 0)
+                        a = middle;
+                    else
+                        b = middle;
+                }
+                double ratio = Math.Exp(0.5 * (a + b)), value = Criterion(ratio, out _);
+                if (value < lowest)
+                    (ratioAt, lowest) = (ratio, value);
             }
-            else
-            {
-                (a, x, fx) = (x, y, fy);
-                y = b - Golden * (b - a);
-                fy = Criterion(y / (1 - y), out _);
-            }
+            (left, leftSlope) = (right, rightSlope);
         }
-        double at = 0.5 * (a + b);
-        double ratioAt = Criterion(0, out _) <= Criterion(at / (1 - at), out _) ? 0 : at / (1 - at);
         Criterion(ratioAt, out double sigma2);
         return new VarianceSplit(ratioAt * sigma2, sigma2, pooled);
     }

@@ -40,10 +40,9 @@ public static class Probability
         if (double.IsInfinity(t))
             return t > 0 ? 0 : 1;
         double square = t * t;
-        // the smaller argument keeps its digits on either side
-        double half = square < df
-            ? 0.5 - 0.5 * SpecialFunctions.BetaRegularized(0.5, df / 2, square / (df + square))
-            : 0.5 * SpecialFunctions.BetaRegularized(df / 2, 0.5, df / (df + square));
+        if (double.IsPositiveInfinity(square))
+            return t > 0 ? 0 : 1;
+        double half = 0.5 * IncompleteIntegrals.Beta(df / 2, 0.5, df / (df + square), square / (df + square));
         return t >= 0 ? half : 1 - half;
     }
 
@@ -106,23 +105,38 @@ public static class Probability
             return 0;
         return double.IsPositiveInfinity(df2)
             ? ChiSquareUpper(f * df1, df1)
-            : SpecialFunctions.BetaRegularized(df2 / 2, df1 / 2, df2 / (df2 + df1 * f));
+            : IncompleteIntegrals.Beta(df2 / 2, df1 / 2, df2 / (df2 + df1 * f), df1 * f / (df2 + df1 * f));
     }
 
     /// <summary>Quantile of F; p in (0, 1).</summary>
-    public static double FisherQuantile(double p, double df1, double df2) =>
-        Solve(x => FisherUpper(x, df1, df2), 1 - p, 1);
+    public static double FisherQuantile(double p, double df1, double df2) => p < 0.5
+        ? Solve(x => -FisherCdf(x, df1, df2), -p, 1)
+        : Solve(x => FisherUpper(x, df1, df2), 1 - p, 1);
+
+    /// <summary>Lower tail of F.</summary>
+    public static double FisherCdf(double f, double df1, double df2)
+    {
+        if (f <= 0)
+            return 0;
+        if (double.IsPositiveInfinity(f))
+            return 1;
+        return double.IsPositiveInfinity(df2)
+            ? ChiSquareCdf(f * df1, df1)
+            : IncompleteIntegrals.Beta(df1 / 2, df2 / 2, df1 * f / (df2 + df1 * f), df2 / (df2 + df1 * f));
+    }
 
     /// <summary>Upper tail of chi-square.</summary>
-    public static double ChiSquareUpper(double x, double df) => x <= 0 ? 1 : SpecialFunctions.GammaUpperRegularized(df / 2, x / 2);
+    public static double ChiSquareUpper(double x, double df) => x <= 0 ? 1 : IncompleteIntegrals.GammaUpper(df / 2, x / 2);
 
     /// <summary>Lower tail of chi-square.</summary>
-    public static double ChiSquareCdf(double x, double df) => x <= 0 ? 0 : SpecialFunctions.GammaLowerRegularized(df / 2, x / 2);
+    public static double ChiSquareCdf(double x, double df) => x <= 0 ? 0 : IncompleteIntegrals.GammaLower(df / 2, x / 2);
 
     /// <summary>Quantile of chi-square; p in (0, 1).</summary>
-    public static double ChiSquareQuantile(double p, double df) => Solve(x => ChiSquareUpper(x, df), 1 - p, df);
+    public static double ChiSquareQuantile(double p, double df) => p < 0.5
+        ? Solve(x => -ChiSquareCdf(x, df), -p, df)
+        : Solve(x => ChiSquareUpper(x, df), 1 - p, df);
 
-    // positive x at which a falling tail equals a value: bisection on the logarithm, then secant steps
+    // positive x at which a falling function equals a value: geometric, then plain bisection
     private static double Solve(Func<double, double> upper, double tail, double start)
     {
         double low = start, high = start;
