@@ -14,7 +14,16 @@ export function watchWidth(element, owner) {
 
 export function unwatch(element) { watched.get(element)?.disconnect(); watched.delete(element); }
 
-export function copy(text) { return navigator.clipboard.writeText(text); }
+/** Copies text; over plain HTTP from another computer browsers offer no clipboard, only the older way. */
+export function copy(text) {
+  if (navigator.clipboard) return navigator.clipboard.writeText(text);
+  const area = document.createElement("textarea");
+  area.value = text;
+  document.body.append(area);
+  area.select();
+  document.execCommand("copy");
+  area.remove();
+}
 
 export function save(name, text, type) { saveBlob(name, new Blob([text], { type })); }
 
@@ -73,22 +82,30 @@ export async function savePng(name) {
 /** Sends chosen or dropped files to the portal and tells .NET how far it is. */
 export function upload(input, drop, owner, address) {
   const send = files => {
-    if (!files.length) return;
+    if (!files.length || drop.sending) return;
     const form = new FormData();
     for (const f of files) form.append("file", f, f.name);
     const request = new XMLHttpRequest();
     request.open("POST", address);
     request.upload.onprogress = e => e.lengthComputable && owner.invokeMethodAsync("UploadProgress", e.loaded / e.total);
-    request.onload = () => owner.invokeMethodAsync("UploadDone", request.status, request.responseText);
-    request.onerror = () => owner.invokeMethodAsync("UploadDone", 0, "");
+    const done = (status, text) => { drop.sending = null; owner.invokeMethodAsync("UploadDone", status, text); };
+    request.onload = () => done(request.status, request.responseText);
+    request.onerror = () => done(0, "");
+    request.onabort = () => done(-1, "");
     owner.invokeMethodAsync("UploadProgress", 0);
+    drop.sending = request;
     request.send(form);
-    drop.stop = () => request.abort();
   };
   input.addEventListener("change", () => { send(input.files); input.value = ""; });
+  // the input is a new one after every file, the place to drop on stays: listening twice would send twice
+  if (drop.listens) return;
+  drop.listens = true;
   drop.addEventListener("dragover", e => { e.preventDefault(); drop.classList.add("over"); });
   drop.addEventListener("dragleave", () => drop.classList.remove("over"));
   drop.addEventListener("drop", e => { e.preventDefault(); drop.classList.remove("over"); send(e.dataTransfer.files); });
 }
+
+/** Stops what is on its way. */
+export function stopUpload(drop) { drop.sending?.abort(); }
 
 export function print() { window.print(); }

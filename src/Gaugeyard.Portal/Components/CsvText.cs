@@ -1,3 +1,5 @@
+using System.Globalization;
+
 namespace Gaugeyard.Portal.Components;
 
 /// <summary>A shown table as CSV (RFC 4180); text that a spreadsheet would take for a formula is quoted with an apostrophe.</summary>
@@ -9,7 +11,7 @@ public static class CsvText
     {
         // numbers for people carry a typographic minus, which no spreadsheet reads
         string plain = text.Replace('\u2212', '-').Replace("\u00a0", " ").Replace("\u2009", "");
-        if (plain.Length > 0 && plain[0] is '=' or '+' or '@' or '\t' or '\r' || (plain.StartsWith('-') && !double.TryParse(plain, out _)))
+        if (plain.Length > 0 && (plain[0] is '=' or '@' or '\t' or '\r' || (plain[0] is '-' or '+' && !double.TryParse(plain, NumberStyles.Number, CultureInfo.InvariantCulture, out _))))
             plain = "'" + plain;
         return plain.AsSpan().IndexOfAny("\",\r\n") >= 0 ? $"\"{plain.Replace("\"", "\"\"")}\"" : plain;
     }

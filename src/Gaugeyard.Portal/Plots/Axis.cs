@@ -45,8 +45,15 @@ public sealed class Axis
     {
         get
         {
-            for (double t = Math.Ceiling(Low / Step - 1e-9) * Step; t <= High + Step * 1e-9; t += Step)
-                yield return Math.Round(t, 12);
+            // counted, not added up: a step below the resolution of the values would never arrive
+            double first = Math.Ceiling(Low / Step - 1e-9) * Step, before = double.NaN;
+            int count = (int)Math.Min(100, Math.Floor((High - first) / Step + 1e-9) + 1);
+            for (int i = 0; i < count; i++)
+            {
+                double tick = Math.Round(first + i * Step, 12);
+                if (tick != before)
+                    yield return before = tick;
+            }
         }
     }
 
