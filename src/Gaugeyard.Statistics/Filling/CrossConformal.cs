@@ -145,13 +145,8 @@ internal sealed class LocalScale
 
     private LocalScale(double intercept, double slope, double floor) => (_intercept, _slope, _floor) = (intercept, slope, floor);
 
-    // a line through spread needs no more points than this
-    private const int Most = 300;
-
     public static LocalScale Of(int[] rows, IFillFit fit, double[] y)
     {
-        int step = Math.Max(1, rows.Length / Most);
-        rows = [.. rows.Where((_, k) => k % step == 0)];
         var points = rows.Select(i => (X: fit.At(i), Y: 0.0, I: i)).Where(p => double.IsFinite(p.X)).Select(p => (p.X, Y: Math.Abs(y[p.I] - p.X))).ToArray();
         if (points.Length < 10)
             return new LocalScale(1, 0, 1);
